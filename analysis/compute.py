@@ -250,6 +250,7 @@ def _serve(pipe: connection.Connection) -> None:
             position, source, task = pipe.recv()
         except EOFError:
             return
+        answer: tuple[int, Exception | None, Any]
         try:
             if network is None or source != at_hand:
                 network, at_hand = load_network(Path(source)), source
