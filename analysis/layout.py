@@ -21,7 +21,7 @@ from analysis.progress import Progress, portion, silent
 LARGEST_DISC = 150
 SMALLEST_MODULE = 3
 SPACING = 1.0
-GAP = 1.6
+GAP = 0.9
 
 
 def layout(network: Network, seed: int = 1, progress: Progress = silent) -> FloatArray:
@@ -62,12 +62,12 @@ def _place(network: Network, seed: int, progress: Progress, depth: int) -> Float
         progress(position / len(modules), "drawing the map")
         part = network.subnetwork(group)
         inner.append(_place(part, seed, silent, depth + 1) if len(group) > LARGEST_DISC else _place_nodes(part, seed))
-    radii = np.array([_radius(points) + GAP * (0.5 if depth else 1.0) for points in inner])
+    radii = np.array([_radius(points) + (0.2 if depth else GAP) for points in inner])
     centres = _place_discs(network, modules, radii, seed)
     positions = np.zeros((network.node_count, 2))
     for group, points, centre in zip(modules.members, inner, centres, strict=True):
         positions[group] = points + centre
-    return positions
+    return positions if depth == 0 else _part_nodes(_fill_disc(positions), SPACING * 0.7)
 
 
 def _place_nodes(network: Network, seed: int) -> FloatArray:
@@ -79,13 +79,20 @@ def _place_nodes(network: Network, seed: int) -> FloatArray:
         drawn = network.igraph.layout_fruchterman_reingold(niter=120, seed=_spiral(count).tolist(), grid=False)
     points = np.array(drawn.coords)
     points -= points.mean(axis=0)
+    return _part_nodes(_fill_disc(points), SPACING * 0.7)
+
+
+def _fill_disc(points: FloatArray) -> FloatArray:
+    """Stretch points along their radius until they fill a disc evenly, about one unit apart; angles are kept."""
+    count = len(points)
+    points = points - points.mean(axis=0)
     distance = np.hypot(points[:, 0], points[:, 1])
     rank = np.empty(count)
     rank[np.argsort(distance, kind="stable")] = np.arange(count) + 0.5
     reach = SPACING * math.sqrt(count) * 0.62
-    wanted = reach * (0.35 * distance / max(float(distance.max()), 1e-9) + 0.65 * np.sqrt(rank / count))
-    scaled = points * (wanted / np.maximum(distance, 1e-9))[:, None]
-    return _part_nodes(scaled, SPACING * 0.7)
+    wanted = reach * (0.3 * distance / max(float(distance.max()), 1e-9) + 0.7 * np.sqrt(rank / count))
+    filled: FloatArray = points * (wanted / np.maximum(distance, 1e-9))[:, None]
+    return filled
 
 
 def _place_discs(network: Network, modules: Modules, radii: FloatArray, seed: int) -> FloatArray:
@@ -134,10 +141,10 @@ def _pack(centres: FloatArray, radii: FloatArray) -> FloatArray:
 
 def _part_nodes(points: FloatArray, least: float) -> FloatArray:
     """Move nodes that nearly coincide a little apart."""
-    if len(points) > 2 * LARGEST_DISC:
+    if len(points) > 4 * LARGEST_DISC:
         return points
     points = points + 1e-3 * _spiral(len(points))
-    for _ in range(12):
+    for _ in range(8):
         offset = points[:, None, :] - points[None, :, :]
         distance = np.sqrt((offset**2).sum(axis=2))
         np.fill_diagonal(distance, np.inf)
