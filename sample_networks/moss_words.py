@@ -17,10 +17,12 @@ VOWELS = "aeiouy"
 CODAS = "fjqvxz"
 MONTHS = "dez fev haz lav maj nov tev"
 KNOWN_GENES = (
-    "baf bax bif bix boz daf dax daz def dex dif dix dof duf dux faf fax fox fuz gaf gax gif hif hof hox jaz kaz kex "
-    "kif lef lex lif lov lox lux maf mav max mef mex mif mix mof mox myf naf nav nef nif nix nox nuf paf pav pax paz "
-    "pef pez pif pix puf pux raf rav rax ref rev rex rif riz rox saf sax sev siz six sox suf suv syf syx taf taz tax "
-    "tef tex tif tox tyf vav vax vez vif vox zaf zax zif"
+    "baf bax bif bix box boz daf dax daz def dex dif div dix dof dox duf dux dyf faf faj fax fex fox fuz gaf gax gef "
+    "gif giv gox haf hev hex hif hiv hix hof hox hyx jaz kaz kef kex kif kix kuz laf lef lev lex lif liv lix lov lox "
+    "lux lyz maf mav max mef mex mez mif mix miz mof mov mox moz muf mux myf naf nav nax nef nej nex nif nix nox nuf "
+    "paf pav pax paz pef pex pez pif pix puf pux raf rav rax ref rev rex rif rix riz rox ruv rux saf sax sef sev sez "
+    "six siz sov sox suf suv suz syf syx taf tax taz tef tex tez tif tof tox tuj tyf vav vax vef vex vez vif vix vox "
+    "zaf zax zif zyx"
 )
 WORDS = "biz faq fez fix fuq goj kez luz sex tux"
 
