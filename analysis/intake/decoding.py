@@ -1,4 +1,4 @@
-"""From bytes to text with `\\n` at the end of each line."""
+"""From bytes to text with one newline at the end of each line."""
 
 from __future__ import annotations
 

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import asdict, dataclass
+from dataclasses import asdict, dataclass, fields
 from typing import Any
 
 from analysis.intake.sentences import describe
@@ -101,7 +101,7 @@ class IntakeReport:
 
     def as_json(self) -> dict[str, Any]:
         """Return the report as plain lists, dicts, strings and numbers."""
-        plain = asdict(self)
+        plain = {field.name: getattr(self, field.name) for field in fields(self)}
         plain["header"] = None if self.header is None else list(self.header)
         plain["columns"] = {role: asdict(column) for role, column in self.columns.items()}
         plain["rejected"] = [asdict(row) for row in self.rejected]

@@ -23,3 +23,8 @@ def listed(words: Iterable[str]) -> str:
     """Join words as a sentence does: `a, b and c`."""
     *front, last = list(words) or [""]
     return f"{', '.join(front)} and {last}" if front else last
+
+
+def with_article(noun: str) -> str:
+    """Return the noun with `a` or `an`."""
+    return f"{'an' if noun[:1].lower() in set('aeiou') else 'a'} {noun}"
