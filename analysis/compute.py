@@ -1,4 +1,4 @@
-"""Runs many independent tasks on one network: in this process or in local worker processes.
+"""Runs many independent tasks on one network: in this process, in local worker processes, or on a Dask cluster.
 
 A task is a small frozen dataclass that can be pickled, with one verb, `run(network)`; it holds its own seed, so where
 and in what order tasks run cannot change the answer. The network travels to each worker once, as files of arrays that
@@ -8,22 +8,27 @@ are mapped into memory, and its igraph view is built there once.
 from __future__ import annotations
 
 import contextlib
+import hashlib
+import json
 import multiprocessing
 import os
 import shutil
+import sys
 import tempfile
 import threading
+import weakref
 from collections import deque
 from collections.abc import Iterator, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 from multiprocessing import connection
+from multiprocessing.reduction import ForkingPickler
 from pathlib import Path
 from typing import Any, Protocol
 
-import numpy as np
-
-from analysis.errors import ComputeError, CorymbError
+from analysis.compute_worker import READY, work
+from analysis.errors import Cancelled, ComputeError
 from analysis.network import Network
+from analysis.network_files import store_network
 from analysis.progress import Progress, silent
 
 RETRIES = 2
@@ -44,7 +49,10 @@ class Compute(Protocol):
     def stream(
         self, network: Network, tasks: Sequence[Task], *, progress: Progress = silent, phrase: str = ""
     ) -> Iterator[tuple[int, Any]]:
-        """Yield `(position of the task, its result)` as tasks finish, in any order."""
+        """Yield `(position of the task, its result)` as tasks finish, in any order.
+
+        An error in a task is raised here as itself; what `progress` raises ends the stream within half a second.
+        """
         ...
 
     def close(self) -> None:
@@ -63,7 +71,7 @@ def run_all(
 
 
 class InProcess:
-    """Runs tasks one after another in this process."""
+    """Runs tasks one after another in this process; a stop takes effect between two of them."""
 
     def stream(
         self, network: Network, tasks: Sequence[Task], *, progress: Progress = silent, phrase: str = ""
@@ -78,200 +86,244 @@ class InProcess:
         """Nothing to let go of."""
 
 
-@dataclass
+@dataclass(eq=False)
 class _Worker:
-    """One worker process, its pipe, and the position of the task at hand."""
+    """One worker process, its pipe, whether it has started, and the position of the task at hand."""
 
     process: Any
     pipe: connection.Connection
+    ready: bool = False
     task: int | None = None
-    known: set[str] = field(default_factory=set)
+
+
+class _Job:
+    """The tasks of one stream: which wait, and how often each has killed its worker."""
+
+    def __init__(self, tasks: Sequence[Task], source: Path) -> None:
+        self.tasks = tasks
+        self.source = str(source)
+        self.waiting = deque(range(len(tasks)))
+        self.deaths = [0] * len(tasks)
+        self.done = 0
+
+    @property
+    def fraction(self) -> float:
+        return self.done / len(self.tasks)
+
+    def put_back(self, position: int) -> None:
+        """Put the task of a worker that died in front again, twice at most."""
+        self.deaths[position] += 1
+        if self.deaths[position] > RETRIES:
+            raise ComputeError(
+                f"a worker process died {self.deaths[position]} times on the same task; it may have run out of "
+                "memory: close other programs, or work on a smaller network (a higher --min-weight)"
+            )
+        self.waiting.appendleft(position)
 
 
 class LocalProcesses:
     """Runs tasks in worker processes of this machine, started ahead and kept.
 
     A worker that dies is replaced and its task done again, twice at most. When a stream is left early, by an error, a
-    stop or a `break`, workers that are busy are killed, so that it ends at once. Workers end when this process does.
+    stop or a `break`, workers that are busy are killed, so that it ends at once. Workers end when this process does,
+    even where it is killed. Streams asked for by several threads run one after another.
 
     Parameters
     ----------
     workers : int
-        Number of processes; the number of processors by default.
+        Number of processes; the number of processors at hand by default.
     """
 
     def __init__(self, workers: int | None = None) -> None:
-        self.workers = workers or os.cpu_count() or 1
+        self.workers = workers or processors()
         self._context = multiprocessing.get_context("spawn")
         self._pool: list[_Worker] = []
         self._folder: Path | None = None
-        self._lock = threading.RLock()
+        self._lock = threading.Lock()
+        self._reader: int | None = None
+        self._closed = False
+        self._failed_starts = 0
 
     def warm(self) -> None:
-        """Start the workers ahead of the first task."""
-        with self._lock:
-            while len(self._pool) < self.workers:
-                self._pool.append(self._start())
+        """Start the workers ahead of the first task; nothing to do while a stream runs."""
+        if self._lock.acquire(blocking=False):
+            try:
+                self._fill()
+            finally:
+                self._lock.release()
 
     def stream(
         self, network: Network, tasks: Sequence[Task], *, progress: Progress = silent, phrase: str = ""
     ) -> Iterator[tuple[int, Any]]:
         """Yield results as they come; see `Compute.stream`."""
-        with self._lock:
-            self.warm()
-            source = self._store(network)
-            waiting = deque((position, 0) for position in range(len(tasks)))
-            attempts = dict.fromkeys(range(len(tasks)), 0)
-            done = 0
-            try:
-                while done < len(tasks):
-                    progress(done / len(tasks), phrase)
-                    self._feed(waiting, tasks, source)
-                    for position, result in self._collect(waiting, attempts):
-                        done += 1
-                        yield position, result
+        with self._turn(progress, phrase):
+            if not tasks:
                 progress(1.0, phrase)
+                return
+            self._fill()
+            job = _Job(tasks, self._store(network))
+            try:
+                yield from self._run(job, progress, phrase)
+            except (KeyboardInterrupt, SystemExit):
+                self.close()
+                raise
             finally:
-                self._replace_busy()
+                self._stop_busy()
 
     def close(self) -> None:
-        """End the workers and remove the files."""
-        with self._lock:
-            for worker in self._pool:
-                _end(worker)
+        """End the workers and remove the files, for good; a stream that runs in another thread is cancelled."""
+        self._closed = True
+        own = self._reader == threading.get_ident()
+        with contextlib.nullcontext() if own else self._lock:
+            _end(self._pool)
             self._pool.clear()
             if self._folder is not None:
                 shutil.rmtree(self._folder, ignore_errors=True)
                 self._folder = None
 
+    @contextlib.contextmanager
+    def _turn(self, progress: Progress, phrase: str) -> Iterator[None]:
+        """Wait until no other stream runs; the lock is a plain one, since another thread may end the stream."""
+        if self._reader == threading.get_ident():
+            raise RuntimeError("these workers are busy with a stream that this thread has not read to its end")
+        while not self._lock.acquire(timeout=POLL_SECONDS):
+            progress(0.0, phrase)
+        self._reader = threading.get_ident()
+        try:
+            yield
+        finally:
+            self._reader = None
+            self._lock.release()
+
+    def _run(self, job: _Job, progress: Progress, phrase: str) -> Iterator[tuple[int, Any]]:
+        while job.done < len(job.tasks):
+            progress(job.fraction, phrase)
+            self._feed(job)
+            answers = self._collect(job)
+            self._feed(job)  # before anyone works on the answers: no worker waits for that
+            for position, failure, result in answers:
+                if failure is not None:
+                    raise failure
+                job.done += 1
+                yield position, result
+        progress(1.0, phrase)
+
+    def _fill(self) -> None:
+        """Bring the pool to its size."""
+        while len(self._pool) < self.workers and not self._closed:
+            self._pool.append(self._start())
+
     def _start(self) -> _Worker:
         ours, theirs = self._context.Pipe()
-        process = self._context.Process(target=_work, args=(theirs,), daemon=True, name="corymb-worker")
+        process = self._context.Process(target=work, args=(theirs,), daemon=True, name="corymb-worker")
         process.start()
         theirs.close()
         return _Worker(process, ours)
 
     def _store(self, network: Network) -> Path:
-        """Write the network's arrays once; workers map them."""
+        """Write the network once; workers map its arrays."""
         if self._folder is None:
             self._folder = Path(tempfile.mkdtemp(prefix="corymb-"))
-        folder = self._folder / network.fingerprint
+            weakref.finalize(self, shutil.rmtree, self._folder, ignore_errors=True)
+        words = json.dumps([network.label, sorted(network.provenance.items())])
+        folder = self._folder / f"{network.fingerprint}-{hashlib.sha256(words.encode()).hexdigest()[:16]}"
         if not folder.exists():
             store_network(network, folder)
         return folder
 
-    def _feed(self, waiting: deque[tuple[int, int]], tasks: Sequence[Task], source: Path) -> None:
+    def _feed(self, job: _Job) -> None:
         for worker in self._pool:
-            if worker.task is None and waiting:
-                position, _ = waiting.popleft()
-                worker.task = position
-                with contextlib.suppress(BrokenPipeError):  # a dead worker is seen and replaced in `_collect`
-                    worker.pipe.send((position, str(source), tasks[position]))
+            if worker.ready and worker.task is None and job.waiting:
+                worker.task = job.waiting.popleft()
+                with contextlib.suppress(ConnectionError):  # a dead worker is seen and replaced in `_collect`
+                    worker.pipe.send((worker.task, job.source, job.tasks[worker.task]))
 
-    def _collect(self, waiting: deque[tuple[int, int]], attempts: dict[int, int]) -> Iterator[tuple[int, Any]]:
-        busy = {worker.pipe: worker for worker in self._pool if worker.task is not None}
-        for ready in connection.wait(list(busy), timeout=POLL_SECONDS):
-            worker = busy[ready]  # type: ignore[index]
+    def _collect(self, job: _Job) -> list[tuple[int, Exception | None, Any]]:
+        """Wait a moment; return the answers that have come, and replace workers that have died."""
+        if self._closed:
+            raise Cancelled("the work was stopped")
+        workers = {worker.pipe: worker for worker in self._pool}
+        answers = []
+        for pipe in connection.wait(list(workers), timeout=POLL_SECONDS):
+            worker = workers[pipe]  # type: ignore[index]
             try:
-                position, failure, result = worker.pipe.recv()
-            except (EOFError, ConnectionResetError):
-                self._bury(worker, waiting, attempts)
+                message = ForkingPickler.loads(worker.pipe.recv_bytes())
+            except (EOFError, OSError):
+                self._bury(worker, job)
                 continue
-            worker.task = None
-            if failure is not None:
-                raise failure
-            yield position, result
+            if message == READY:
+                worker.ready = True
+                self._failed_starts = 0
+            else:
+                worker.task = None
+                answers.append(message)
+        return answers
 
-    def _bury(self, worker: _Worker, waiting: deque[tuple[int, int]], attempts: dict[int, int]) -> None:
+    def _bury(self, worker: _Worker, job: _Job) -> None:
         """Replace a worker that died and put its task back in front."""
-        position = worker.task
-        _end(worker)
-        self._pool[self._pool.index(worker)] = self._start()
-        if position is None:
-            return
-        attempts[position] += 1
-        if attempts[position] > RETRIES:
-            raise ComputeError(
-                f"a worker process died {attempts[position]} times on the same task; it may have run out of memory: "
-                "close other programs, or work on a smaller network (a higher --min-weight)"
-            )
-        waiting.appendleft((position, attempts[position]))
+        _end([worker])
+        self._pool.remove(worker)
+        if worker.task is not None:
+            job.put_back(worker.task)
+        elif not worker.ready:
+            self._failed_starts += 1
+            if self._failed_starts > RETRIES:
+                raise ComputeError(
+                    "worker processes end as soon as they start; there may be too little memory, or the program that "
+                    'started them does its work on import, outside `if __name__ == "__main__":`'
+                )
+        self._fill()
 
-    def _replace_busy(self) -> None:
-        for place, worker in enumerate(self._pool):
-            if worker.task is not None:
-                _end(worker)
-                self._pool[place] = self._start()
-
-
-def store_network(network: Network, folder: Path) -> None:
-    """Write a network's arrays into a new folder, whole or not at all."""
-    draft = Path(tempfile.mkdtemp(prefix="draft-", dir=folder.parent))
-    np.save(draft / "sources.npy", network.sources)
-    np.save(draft / "targets.npy", network.targets)
-    if network.weights is not None:
-        np.save(draft / "weights.npy", network.weights)
-    (draft / "names.txt").write_text("\n".join(network.names), encoding="utf-8")
-    (draft / "label.txt").write_text(network.label, encoding="utf-8")
-    draft.rename(folder)
+    def _stop_busy(self) -> None:
+        """Kill the workers that are busy, and start others unless the whole program is ending."""
+        busy = [worker for worker in self._pool if worker.task is not None]
+        _end(busy)
+        self._pool = [worker for worker in self._pool if worker.task is None]
+        if busy and not sys.is_finalizing():
+            self._fill()
 
 
-def load_network(folder: Path) -> Network:
-    """Open a network that `store_network` wrote; its arrays stay on disk and are mapped into memory."""
-    text = (folder / "names.txt").read_text(encoding="utf-8")
-    weights = folder / "weights.npy"
-    return Network(
-        tuple(text.split("\n")) if text else (),
-        np.load(folder / "sources.npy", mmap_mode="r"),
-        np.load(folder / "targets.npy", mmap_mode="r"),
-        np.load(weights, mmap_mode="r") if weights.exists() else None,
-        (folder / "label.txt").read_text(encoding="utf-8"),
-    )
+def _end(workers: Sequence[_Worker]) -> None:
+    for worker in workers:
+        worker.process.kill()
+    for worker in workers:
+        worker.process.join()
+        worker.process.close()
+        worker.pipe.close()
 
 
-def _end(worker: _Worker) -> None:
-    worker.process.kill()
-    worker.process.join()
-    worker.pipe.close()
-
-
-def _work(pipe: connection.Connection) -> None:
-    """Body of a worker: take tasks until the pipe closes; end at once when the parent does."""
-    threading.Thread(target=_end_with_parent, daemon=True).start()
-    with contextlib.suppress(KeyboardInterrupt):  # the parent was interrupted too, and tells its own user
-        _serve(pipe)
-
-
-def _serve(pipe: connection.Connection) -> None:
-    network: Network | None = None
-    at_hand = ""
-    while True:
-        try:
-            position, source, task = pipe.recv()
-        except EOFError:
-            return
-        answer: tuple[int, Exception | None, Any]
-        try:
-            if network is None or source != at_hand:
-                network, at_hand = load_network(Path(source)), source
-            answer = (position, None, task.run(network))
-        except CorymbError as error:
-            answer = (position, error, None)
-        except MemoryError:
-            answer = (position, ComputeError("a worker ran out of memory; work on a smaller network"), None)
-        except Exception as error:  # noqa: BLE001 - a fault in a task is raised again, whole, in the parent
-            answer = (position, error, None)
-        pipe.send(answer)
-
-
-def _end_with_parent() -> None:
-    parent = multiprocessing.parent_process()
-    if parent is not None:
-        parent.join()
-        os._exit(1)
+def processors() -> int:
+    """Return the number of processors that this process may use."""
+    if hasattr(os, "sched_getaffinity"):
+        return len(os.sched_getaffinity(0))
+    return os.cpu_count() or 1
 
 
 def choose_compute(network: Network, runs: int) -> InProcess | LocalProcesses:
     """Choose local processes where the work is long enough to repay starting them (about half a second)."""
     pays = runs * (network.edge_count + network.node_count) > 2_000_000
-    return LocalProcesses() if pays and (os.cpu_count() or 1) > 1 else InProcess()
+    return LocalProcesses() if pays else InProcess()
+
+
+def open_compute(address: str | None, network: Network, runs: int) -> Compute:
+    """Return the place where tasks run: a Dask cluster where an address is given, else as `choose_compute`.
+
+    Parameters
+    ----------
+    address : str or None
+        Address of a running scheduler, such as `tcp://10.0.0.1:8786`.
+    network : Network
+        What the tasks work on.
+    runs : int
+        How many runs of a method are to come, roughly.
+
+    Raises
+    ------
+    ComputeError
+        Where the cluster cannot be used; the message says what to do.
+    """
+    if address is None:
+        return choose_compute(network, runs)
+    from analysis.compute_dask import DaskCluster
+
+    return DaskCluster(address)

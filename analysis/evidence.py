@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Any
 
 import numpy as np
+from numpy.typing import NDArray
 
 from analysis.agreement import ami_to, pairwise_ami
 from analysis.compute import Compute, InProcess, run_all
@@ -21,8 +22,10 @@ from analysis.progress import Progress, portion, silent
 from analysis.study import Study, StudySettings
 from analysis.study_tables import ModuleEvidence, evidence_table, membership_table
 from analysis.trust.ensemble import Recurrence, noise_tasks, score_recurrence, seed_tasks
+from analysis.verdicts import partition_sentences
 
 NOISY_COPIES = 20
+DISSOLVED = 0.5  # Hennig 2007: a cluster whose best match is below one half counts as dissolved
 NAN = float("nan")
 
 
@@ -55,7 +58,7 @@ def run_study(
     if recurrence is not None:
         evidence = ModuleEvidence(recurrence.stability, *(np.full(len(modules), np.nan) for _ in range(4)))
     progress(1.0, "writing the tables")
-    return Study(
+    study = Study(
         network=network,
         settings=settings,
         modules=modules,
@@ -65,7 +68,10 @@ def run_study(
         shown=ensemble.shown,
         seed_ami=ensemble.seed_ami,
         noise_ami=_noise_ami(modules, noisy),
+        copies=len(noisy),
+        returned=_returned(recurrence) if noisy and recurrence is not None else None,
     )
+    return replace(study, sentences=tuple(partition_sentences(study)))
 
 
 def method_of(settings: StudySettings) -> Leiden | Louvain | CliquePercolation:
@@ -146,6 +152,11 @@ def _recurrence(modules: Modules, ensemble: Ensemble, noisy: Sequence[Modules]) 
     if len(ensemble.runs) > 1:
         return score_recurrence(modules, [Modules.from_labels(labels) for labels in ensemble.runs])
     return None
+
+
+def _returned(recurrence: Recurrence) -> NDArray[np.int32]:
+    counts: NDArray[np.int32] = (recurrence.jaccard >= DISSOLVED).sum(axis=0).astype(np.int32)
+    return counts
 
 
 def _noise_ami(modules: Modules, noisy: Sequence[Modules]) -> float:

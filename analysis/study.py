@@ -9,6 +9,9 @@ from collections.abc import Mapping
 from dataclasses import asdict, dataclass, field, replace
 from typing import TYPE_CHECKING, Any
 
+import numpy as np
+from numpy.typing import NDArray
+
 from analysis.errors import SettingError
 from analysis.modules import Modules
 from analysis.network import FloatArray, Network
@@ -149,6 +152,13 @@ class Study:
         None where no null network was asked for.
     suggestion : str
         One sentence, where the resolution was suggested; else empty.
+    sentences : tuple of str
+        The verdict on the whole, plainest first.
+    copies : int
+        Number of noisy copies; 0 where none was asked for.
+    returned : int32 array, shape (modules,), or None
+        In how many of the noisy copies each module came back (best-match Jaccard of one half or more; Hennig 2007
+        calls a cluster below that dissolved).
     """
 
     network: Network
@@ -163,3 +173,13 @@ class Study:
     nulls: NullDraws | None = None
     suggestion: str = ""
     sentences: tuple[str, ...] = ()
+    copies: int = 0
+    returned: NDArray[np.int32] | None = None
+
+    def named(self, names: Mapping[str, str]) -> Study:
+        """Return the study with names given to modules, `{"M2": "bilayer repair"}`; the figures stay as they are."""
+        if dict(names) == dict(self.settings.names):
+            return self
+        table = self.module_table.copy()
+        table["name"] = [names.get(module, "") for module in table["module"]]
+        return replace(self, settings=self.settings.at(names=dict(names)), module_table=table)

@@ -22,7 +22,7 @@ if TYPE_CHECKING:
 
 @dataclass(frozen=True)
 class ModuleEvidence:
-    """What runs beyond the clustering itself say of each module; all arrays of shape (modules,), NaN where not computed.
+    """What further runs say of each module; all arrays of shape (modules,), NaN where not computed.
 
     Attributes
     ----------

@@ -1,0 +1,228 @@
+"""The desk: asks `analysis/` for answers, keeps them, and hands them to the screen.
+
+One desk serves all windows. It holds no state of a window: what a window shows is named by its requests.
+"""
+
+from __future__ import annotations
+
+import threading
+from collections import OrderedDict
+from collections.abc import Callable
+from pathlib import Path
+from typing import Any
+
+import numpy as np
+
+from analysis.compute import run_all
+from analysis.errors import InputError
+from analysis.evidence import run_study
+from analysis.intake import Reading, parse_network, read_network
+from analysis.modules import Modules
+from analysis.network import FloatArray, Network
+from analysis.progress import Progress
+from analysis.study import Study, StudySettings
+from analysis.trust.sweep import SweepSettings, preview_points, resolution_grid, run_sweep
+from app.jobs import Jobs
+from app.map.colours import Anchor, make_anchor, pack_colours
+from app.map.drawing import DrawTask
+from app.places import sample_folder
+from app.ruler import Ruler
+from app.workspace import TrailEntry, Workspace, clustering_id
+
+ANCHORS_AT_HAND = 4
+SAMPLE = "saltmarsh_moss_interactions.tsv"
+SAMPLE_LABEL = "saltmarsh moss, stress interactome"
+
+
+class Desk:
+    """Answers about networks, drawings, rulers and studies; any thread may ask.
+
+    Parameters
+    ----------
+    workspace : Workspace
+    jobs : Jobs
+    """
+
+    def __init__(self, workspace: Workspace, jobs: Jobs) -> None:
+        self.workspace = workspace
+        self.jobs = jobs
+        self._lock = threading.RLock()
+        self._anchors: OrderedDict[str, Anchor] = OrderedDict()
+        self._rulers: dict[tuple[str, str], Ruler] = {}
+
+    # networks
+
+    def open_path(self, path: Path) -> str:
+        """Read a file from the disk into the workspace; return the network's fingerprint."""
+        return self._take(read_network(path), path.read_bytes(), path.name)
+
+    def open_bytes(self, content: bytes, file_name: str, weight: str | None = None) -> str:
+        """Read an upload into the workspace; return the network's fingerprint."""
+        return self._take(parse_network(content, file_name, weight=weight), content, file_name)
+
+    def open_sample(self) -> str:
+        """Read the sample network, under its full name."""
+        path = sample_folder() / SAMPLE
+        reading = read_network(path)
+        network = reading.network
+        named = Network(
+            network.names, network.sources, network.targets, network.weights, SAMPLE_LABEL, network.provenance
+        )
+        return self._take(Reading(named, reading.report), path.read_bytes(), SAMPLE)
+
+    def _take(self, reading: Reading, content: bytes, file_name: str) -> str:
+        if reading.network.edge_count == 0:
+            raise InputError(file_name, "no interaction between two different genes", "give a file with at least one")
+        report = {**reading.report.as_json(), "sentences": reading.report.sentences()}
+        self.workspace.add_network(reading.network, report, content, file_name)
+        return reading.network.fingerprint
+
+    def network(self, fingerprint: str) -> Network:
+        """Return a network of the workspace."""
+        return self.workspace.network(fingerprint)
+
+    # drawing
+
+    def start_drawing(self, fingerprint: str) -> str:
+        """Begin to lay the network out, unless it is done; return the job's id."""
+        network = self.network(fingerprint)
+
+        def work(progress: Progress) -> bool:
+            if self.workspace.arrays("drawing", fingerprint) is None:
+                progress(0.0, "drawing the map")
+                tasks = [DrawTask()]
+                drawn = run_all(self.jobs.quick, network, tasks, progress=progress, phrase="drawing the map")[0]
+                self.workspace.save_arrays("drawing", fingerprint, drawn)
+            return True
+
+        return self.jobs.start("drawing", fingerprint, work)
+
+    def drawing(self, fingerprint: str) -> tuple[FloatArray, Anchor] | None:
+        """Return positions and anchor, or None where they are not ready."""
+        arrays = self.workspace.arrays("drawing", fingerprint)
+        if arrays is None:
+            return None
+        with self._lock:
+            anchor = self._anchors.get(fingerprint)
+            if anchor is None:
+                anchor = make_anchor(self.network(fingerprint), arrays["anchor"])
+                self._anchors[fingerprint] = anchor
+                while len(self._anchors) > ANCHORS_AT_HAND:
+                    self._anchors.popitem(last=False)
+        return arrays["positions"], anchor
+
+    # the ruler
+
+    def start_ruler(self, fingerprint: str, quality: str) -> str | None:
+        """Begin the sweep behind the ruler, unless it is done; return the job's id, None where nothing is to do."""
+        ruler = self.ruler(fingerprint, quality)
+        if ruler is not None and ruler.done:
+            return None
+        network = self.network(fingerprint)
+        settings = SweepSettings(quality=quality)
+        key = f"{fingerprint}:{quality}"
+
+        def work(progress: Progress) -> bool:
+            grid = resolution_grid(network, quality, settings.steps)
+            self._keep_ruler(fingerprint, quality, lambda _: Ruler.empty(tuple(grid.tolist())))
+            on_point = self._point_keeper(fingerprint, quality)
+            if network.edge_count <= PREVIEW_EDGES:
+                for point in preview_points(network, quality, grid):
+                    progress(0.0, "sweep over resolutions: a first look")
+                    on_point(point)
+            sweep = run_sweep(network, settings, self.jobs.long, progress, on_point)
+            finished = self._keep_ruler(fingerprint, quality, lambda ruler: ruler.finished(sweep))
+            self.workspace.save_arrays("ruler", key, finished.to_arrays())
+            return True
+
+        return self.jobs.start("sweep", key, work)
+
+    def ruler(self, fingerprint: str, quality: str) -> Ruler | None:
+        """Return the ruler as far as it is filled, None where nothing is known."""
+        with self._lock:
+            found = self._rulers.get((fingerprint, quality))
+            if found is not None:
+                return found
+            arrays = self.workspace.arrays("ruler", f"{fingerprint}:{quality}")
+            if arrays is None:
+                return None
+            self._rulers[fingerprint, quality] = Ruler.from_arrays(arrays)
+            return self._rulers[fingerprint, quality]
+
+    def _keep_ruler(self, fingerprint: str, quality: str, change: Callable[[Ruler], Ruler]) -> Ruler:
+        with self._lock:
+            before = self._rulers.get((fingerprint, quality)) or Ruler((), ())
+            self._rulers[fingerprint, quality] = change(before)
+            return self._rulers[fingerprint, quality]
+
+    def _point_keeper(self, fingerprint: str, quality: str) -> Callable[[Any], None]:
+        def keep(point: Any) -> None:
+            self._keep_ruler(fingerprint, quality, lambda ruler: ruler.filled(point))
+
+        return keep
+
+    def ruler_colours(self, fingerprint: str, quality: str, position: int) -> bytes | None:
+        """Return the colours of one ready point of the ruler, packed for the map."""
+        ruler, drawing = self.ruler(fingerprint, quality), self.drawing(fingerprint)
+        if ruler is None or drawing is None or not 0 <= position < len(ruler.points):
+            return None
+        point = ruler.points[position]
+        return None if point is None else pack_colours(drawing[1], Modules.from_labels(point.labels))
+
+    # studies
+
+    def start_study(self, fingerprint: str, settings: StudySettings) -> tuple[str, str | None]:
+        """Begin a study, unless it is done; return its id and the job's (None where nothing is to do)."""
+        key = clustering_id(fingerprint, settings.as_dict())
+        if self.study(key) is not None:
+            return key, None
+        network = self.network(fingerprint)
+
+        def work(progress: Progress) -> bool:
+            compute = self.jobs.quick if _is_quick(network, settings) else self.jobs.long
+            study = run_study(network, settings, compute=compute, progress=progress)
+            self.workspace.save_study(key, study)
+            self.workspace.save_clustering(TrailEntry.of(fingerprint, settings.as_dict(), _figures(study)))
+            return True
+
+        return key, self.jobs.start("study", key, work)
+
+    def study(self, study_id: str | None) -> Study | None:
+        """Return a finished study with the names given to its modules, None where it is not ready."""
+        if not study_id:
+            return None
+        study = self.workspace.study(study_id)
+        return None if study is None else study.named(self.workspace.names(study_id))
+
+    def study_colours(self, study_id: str) -> bytes | None:
+        """Return the colours of a finished study, packed for the map."""
+        study = self.workspace.study(study_id)
+        drawing = self.drawing(study.network.fingerprint) if study is not None else None
+        return None if study is None or drawing is None else pack_colours(drawing[1], study.modules)
+
+    def hue(self, study: Study, module: int) -> int:
+        """Return the hue of one module, a position in the palette."""
+        from app.map.colours import follow
+
+        drawing = self.drawing(study.network.fingerprint)
+        return 0 if drawing is None else int(follow(drawing[1], study.modules)[module])
+
+
+PREVIEW_EDGES = 60_000
+QUICK_WORK = 100_000
+
+
+def _is_quick(network: Network, settings: StudySettings) -> bool:
+    """Whether a study is so short that it should not wait behind long work."""
+    return network.edge_count * (settings.runs + settings.nulls) < QUICK_WORK
+
+
+def _figures(study: Study) -> dict[str, Any]:
+    return {
+        "modules": len(study.modules),
+        "of_three": int((study.modules.sizes >= 3).sum()),
+        "modularity": study.modularity,
+        "seed_ami": None if np.isnan(study.seed_ami) else study.seed_ami,
+        "noise_ami": None if np.isnan(study.noise_ami) else study.noise_ami,
+        "p_value": None if study.nulls is None else study.nulls.p_value,
+    }
