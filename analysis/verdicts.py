@@ -15,13 +15,13 @@ STRUCTURE_CAUTION = "A group in the drawing is not yet a function: structure alo
 DEGREE_CAUTION = "A protein's degree also reflects how much it was studied."
 USE_CAUTION = "Results are for research, not for diagnosis or treatment."
 CLUSTERED_CAUTION = (
-    "Networks whose edges merely follow a distance (neighbours of neighbours are neighbours) look modular by every figure "
-    "here, since null networks keep degrees and not clustering."
+    "Networks whose edges merely follow a distance (neighbours of neighbours are neighbours) look modular by every "
+    "figure here, since null networks keep degrees and not clustering."
 )
 
 
 def partition_sentences(study: Study) -> list[str]:
-    """Return the verdict on the whole clustering, plainest first; a network no more modular than chance says so first."""
+    """Return the verdict on the whole clustering, plainest first; what chance would give comes before all else."""
     sentences = [*_chance(study), _count(study), *_agreement(study), *_left_out(study), *_limit(study)]
     return sentences if not study.suggestion else [study.suggestion, *sentences]
 
@@ -73,7 +73,8 @@ def _returns(study: Study, module: int) -> str:
     if study.returned is None:
         return ""
     share = f"{study.settings.noise:.0%}".replace("%", " %")
-    return f"comes back in {study.returned[module]} of {study.copies} copies of the network with {share} of the edges left out"
+    found = f"comes back in {study.returned[module]} of {study.copies} copies of the network"
+    return f"{found} with {share} of the edges left out"
 
 
 def _denser(row: object) -> str:
@@ -96,11 +97,12 @@ def _chance(study: Study) -> list[str]:
     if nulls.p_value > LEVEL:
         return [
             f"This network is no more modular than random networks with the same degrees (modularity "
-            f"{nulls.observed:.3f}, by chance {mean:.3f}, p = {nulls.p_value:.2g}): the modules below are what chance gives."
+            f"{nulls.observed:.3f}, by chance {mean:.3f}, p = {nulls.p_value:.2g}): its modules are what chance gives."
         ]
     return [
         f"The network is more modular than {count} random networks with the same degrees (modularity "
-        f"{nulls.observed:.3f}, by chance {mean:.3f}, p = {nulls.p_value:.2g}). That speaks for the whole, not yet for each module."
+        f"{nulls.observed:.3f}, by chance {mean:.3f}, p = {nulls.p_value:.2g}). That speaks for the whole, "
+        "not yet for each module."
     ]
 
 
@@ -115,8 +117,8 @@ def _agreement(study: Study) -> list[str]:
     sentences = []
     if not math.isnan(study.seed_ami):
         sentences.append(
-            f"Runs with other seeds agree with one another at {study.seed_ami:.2f} (AMI, 1 is perfect), which says how well the "
-            "method settles, not whether it is right."
+            f"Runs with other seeds agree with one another at {study.seed_ami:.2f} (AMI, 1 is perfect), which says "
+            "how well the method settles, not whether it is right."
         )
     if not math.isnan(study.noise_ami):
         share = f"{study.settings.noise:.0%}".replace("%", " %")
@@ -139,6 +141,6 @@ def _limit(study: Study) -> list[str]:
     if not below:
         return []
     return [
-        f"{below} of them have so few edges inside that modularity at resolution 1 could have merged them with a neighbour "
-        "(resolution limit); look at finer resolutions too."
+        f"{below} of them have so few edges inside that modularity at resolution 1 could have merged them with a "
+        "neighbour (resolution limit); look at finer resolutions too."
     ]
