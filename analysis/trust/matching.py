@@ -3,13 +3,16 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Sequence
+from typing import TYPE_CHECKING
 
 import numpy as np
 from numpy.typing import NDArray
 
 from analysis.modules import Modules
 from analysis.network import FloatArray
-from analysis.trust.sweep import Sweep
+
+if TYPE_CHECKING:
+    from analysis.trust.sweep import Sweep
 
 DISSOLVED = 0.5
 LARGE = 30_000_000
@@ -31,15 +34,26 @@ def best_matches(members: Sequence[NDArray[np.int32]], labelings: Sequence[Label
         Non-negative labels.
     """
     table = np.zeros((len(members), len(labelings)))
-    if not len(members):
-        return table
-    nodes = np.concatenate(members)
-    starts = np.concatenate([[0], np.cumsum([len(group) for group in members])])
-    # The compiled form is five times quicker; where little is to be done, loading the compiler would cost more.
-    match = _compiled(nodes, starts) if len(nodes) * len(labelings) > LARGE else by_product(nodes, starts)
+    match = matcher(members, len(labelings))
     for column, labels in enumerate(labelings):
         table[:, column] = match(labels)
     return table
+
+
+def matcher(members: Sequence[NDArray[np.int32]], partitions: int) -> Callable[[Labels], FloatArray]:
+    """Return a function from the labels of a partition to one column of `best_matches`.
+
+    Parameters
+    ----------
+    partitions : int
+        How often it will be called. The compiled form is five times quicker; where little is to be done, loading the
+        compiler would cost more, and a sparse product does the same.
+    """
+    if not len(members):
+        return lambda _labels: np.zeros(0)
+    nodes = np.concatenate(members)
+    starts = np.concatenate([[0], np.cumsum([len(group) for group in members])])
+    return _compiled(nodes, starts) if len(nodes) * partitions > LARGE else by_product(nodes, starts)
 
 
 def _compiled(nodes: NDArray[np.int32], starts: NDArray[np.int64]) -> Callable[[Labels], FloatArray]:
@@ -103,9 +117,25 @@ def module_ranges(modules: Modules, sweep: Sweep, threshold: float = DISSOLVED) 
     the point of the best match, from grid point to grid point; NaN where the module holds nowhere.
     """
     match = best_matches(modules.members, [point.labels for point in sweep.points])
-    grid = sweep.resolutions
-    low, high = np.full(len(modules), np.nan), np.full(len(modules), np.nan)
-    if not len(modules):
+    return unbroken_range(match, sweep.resolutions, threshold)
+
+
+def unbroken_range(match: FloatArray, grid: FloatArray, threshold: float) -> tuple[FloatArray, FloatArray]:
+    """Return the first and last resolution of the stretch around the best match in which it stays above a threshold.
+
+    Parameters
+    ----------
+    match : float64 array, shape (modules, points)
+    grid : float64 array, shape (points,)
+        Ascending resolutions.
+
+    Returns
+    -------
+    low, high : float64 arrays, shape (modules,)
+        NaN where the match is nowhere above the threshold.
+    """
+    low, high = np.full(len(match), np.nan), np.full(len(match), np.nan)
+    if not len(match):
         return low, high
     holds = match > threshold
     peak = match.argmax(axis=1)

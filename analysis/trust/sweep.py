@@ -16,6 +16,7 @@ from analysis.network import FloatArray, Network
 from analysis.progress import Progress, portion, silent
 from analysis.trust.chains import ChainTask, resolution_grid
 from analysis.trust.envelope import Domain
+from analysis.trust.matching import module_ranges, stability_over_sweep
 from analysis.trust.noise import Noise
 from analysis.trust.plateaus import Plateau, Suggestion, find_plateaus, is_undivided, share_in_modules, suggest
 from analysis.trust.sweep_points import PartitionPool, SweepPoint, ami_matrix, bare_point, with_neighbours
@@ -31,9 +32,11 @@ __all__ = [
     "Sweep",
     "SweepPoint",
     "SweepSettings",
+    "module_ranges",
     "preview_points",
     "resolution_grid",
     "run_sweep",
+    "stability_over_sweep",
     "sweep_tasks",
 ]
 
