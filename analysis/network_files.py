@@ -41,4 +41,5 @@ def load_network(folder: Path) -> Network:
 
 def _mapped(path: Path) -> NDArray[Any]:
     """Return a read-only array over the file; a plain one, since some libraries refuse subclasses."""
-    return np.load(path, mmap_mode="r").view(np.ndarray)
+    array: NDArray[Any] = np.load(path, mmap_mode="r").view(np.ndarray)
+    return array
