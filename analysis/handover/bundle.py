@@ -1,0 +1,64 @@
+"""What every exporter is given."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass, fields
+from typing import Any
+
+from analysis.intake.report import IntakeReport, Rejected, Role
+from analysis.study import Study
+
+
+@dataclass(frozen=True)
+class Source:
+    """The file that a network was read from.
+
+    Attributes
+    ----------
+    name : str
+        Its name, without folders.
+    sha256 : str
+        Of its bytes as they lay on disk.
+    path : str
+        From the folder of the recipe to the file, with `/`; the name alone where the two have no common ground.
+    """
+
+    name: str
+    sha256: str
+    path: str
+
+
+@dataclass(frozen=True, eq=False)
+class Bundle:
+    """Everything that can be handed over.
+
+    Attributes
+    ----------
+    study : Study
+        One clustering with its evidence.
+    report : IntakeReport or None
+        How the network was read; None where it did not come from a file.
+    source : Source or None
+        The file; None where there was none.
+    """
+
+    study: Study
+    report: IntakeReport | None = None
+    source: Source | None = None
+
+
+Exporter = Callable[[Bundle], dict[str, bytes]]
+"""Takes a bundle, returns the content of each file by its relative path; never sees a folder, knows no clock."""
+
+
+def report_from_plain(plain: Mapping[str, Any]) -> IntakeReport:
+    """Return the report that `IntakeReport.as_json` was made from, as the workspace keeps it; further keys are left."""
+    values = {each.name: plain[each.name] for each in fields(IntakeReport) if each.name in plain}
+    values["header"] = None if plain["header"] is None else tuple(plain["header"])
+    values["columns"] = {role: Role(**column) for role, column in plain["columns"].items()}
+    values["rejected"] = tuple(Rejected(**row) for row in plain["rejected"])
+    values["warnings"] = tuple(dict(warning) for warning in plain["warnings"])
+    span = plain.get("weight_range")
+    values["weight_range"] = None if span is None else (float(span[0]), float(span[1]))
+    return IntakeReport(**values)

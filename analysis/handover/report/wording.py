@@ -1,0 +1,38 @@
+"""How figures and settings are written in the report."""
+
+from __future__ import annotations
+
+import math
+from typing import Any
+
+MISSING = "–"
+
+
+def count(value: float, noun: str = "", plural: str | None = None) -> str:
+    """Return `1 gene`, `12,000 genes`, or the bare number."""
+    written = f"{int(value):,}"
+    return f"{written} {noun if value == 1 else plural or noun + 's'}" if noun else written
+
+
+def figure(value: Any, decimals: int = 2) -> str:
+    """Return a figure with fixed decimals, a dash where it is missing."""
+    return f"{value:,.{decimals}f}" if is_known(value) else MISSING
+
+
+def chance(value: Any) -> str:
+    """Return a p- or q-value with two significant digits."""
+    return f"{value:.2g}" if is_known(value) else MISSING
+
+
+def is_known(value: Any) -> bool:
+    """Tell whether a figure was computed."""
+    return value is not None and not (isinstance(value, float) and math.isnan(value))
+
+
+def plain(value: Any) -> str:
+    """Return a setting as it stands in the recipe."""
+    if value is None:
+        return MISSING
+    if isinstance(value, float):
+        return f"{value:g}" if float(f"{value:g}") == value else repr(value)
+    return str(value)
