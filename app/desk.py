@@ -5,17 +5,20 @@ One desk serves all windows. It holds no state of a window: what a window shows 
 
 from __future__ import annotations
 
+import hashlib
+import re
 import threading
 from collections import OrderedDict
-from collections.abc import Callable
+from collections.abc import Callable, Mapping
 from pathlib import Path
 from typing import Any
 
 import numpy as np
 
 from analysis.compute import run_all
-from analysis.errors import InputError
+from analysis.errors import CorymbError, InputError
 from analysis.evidence import run_study
+from analysis.handover import Bundle, Source, as_zip, bundle_files
 from analysis.intake import Reading, parse_network, read_network
 from analysis.modules import Modules
 from analysis.network import FloatArray, Network
@@ -49,6 +52,7 @@ class Desk:
         self._lock = threading.RLock()
         self._anchors: OrderedDict[str, Anchor] = OrderedDict()
         self._rulers: dict[tuple[str, str], Ruler] = {}
+        self._packed: OrderedDict[str, tuple[str, bytes]] = OrderedDict()
 
     # networks
 
@@ -69,6 +73,21 @@ class Desk:
             network.names, network.sources, network.targets, network.weights, SAMPLE_LABEL, network.provenance
         )
         return self._take(Reading(named, reading.report), path.read_bytes(), SAMPLE)
+
+    def first_network(self) -> str:
+        """Return the network that was at hand last, else the sample network."""
+        last = self.workspace.recall(AT_HAND)
+        known = {entry.fingerprint for entry in self.workspace.networks()}
+        return str(last) if last in known else self.open_sample()
+
+    def keep_wanted(self, fingerprint: str, wanted: Mapping[str, Any]) -> None:
+        """Remember which clustering of a network was asked for last."""
+        self.workspace.remember(f"wanted {fingerprint}", dict(wanted))
+
+    def last_wanted(self, fingerprint: str) -> dict[str, Any] | None:
+        """Return which clustering of a network was asked for last."""
+        found = self.workspace.recall(f"wanted {fingerprint}")
+        return dict(found) if found else None
 
     def _take(self, reading: Reading, content: bytes, file_name: str) -> str:
         if reading.network.edge_count == 0:
@@ -207,7 +226,53 @@ class Desk:
         drawing = self.drawing(study.network.fingerprint)
         return 0 if drawing is None else int(follow(drawing[1], study.modules)[module])
 
+    # handing over
 
+    def start_packing(self, study_id: str) -> str:
+        """Begin to write the files of a study into a zip; return the job's id."""
+
+        def work(progress: Progress) -> bytes:
+            progress(0.1, "writing the files")
+            study = self.study(study_id)
+            if study is None:
+                raise CorymbError("this clustering is not ready yet; wait for it, then hand it over")
+            files = bundle_files(self._bundle(study))
+            raw = self.workspace.raw(study.network.fingerprint)
+            if raw is not None:
+                files[f"{INPUT_FOLDER}/{raw[0]}"] = raw[1]
+            content = as_zip(files)
+            progress(0.9, "writing the files")
+            name = _zip_name(study)
+            with self._lock:
+                self._packed[study_id] = (name, content)
+                self._packed.move_to_end(study_id)
+                while len(self._packed) > ZIPS_AT_HAND:
+                    self._packed.popitem(last=False)
+            self.workspace.remember(f"handed over {study_id}", True)
+            return content
+
+        names = sorted(self.workspace.names(study_id).items())
+        return self.jobs.start("packing", f"{study_id}:{names}", work)
+
+    def _bundle(self, study: Study) -> Bundle:
+        """Return everything to be handed over; the input file travels in the zip, beside the recipe."""
+        fingerprint = study.network.fingerprint
+        raw = self.workspace.raw(fingerprint)
+        source = None
+        if raw is not None:
+            name, content = raw
+            source = Source(name, hashlib.sha256(content).hexdigest(), f"{INPUT_FOLDER}/{name}")
+        return Bundle(study, None, source)
+
+    def packed(self, study_id: str) -> tuple[str, bytes] | None:
+        """Return file name and content of a zip that was written, None where there is none."""
+        with self._lock:
+            return self._packed.get(study_id)
+
+
+AT_HAND = "network at hand"
+INPUT_FOLDER = "input"
+ZIPS_AT_HAND = 4
 PREVIEW_EDGES = 60_000
 QUICK_WORK = 100_000
 
@@ -215,6 +280,12 @@ QUICK_WORK = 100_000
 def _is_quick(network: Network, settings: StudySettings) -> bool:
     """Whether a study is so short that it should not wait behind long work."""
     return network.edge_count * (settings.runs + settings.nulls) < QUICK_WORK
+
+
+def _zip_name(study: Study) -> str:
+    """Return a harmless file name for a study's zip."""
+    words = re.sub(r"[^A-Za-z0-9]+", "-", study.network.label).strip("-").lower() or "network"
+    return f"{words}-{len(study.modules)}-modules.zip"
 
 
 def _figures(study: Study) -> dict[str, Any]:

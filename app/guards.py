@@ -123,10 +123,15 @@ def _foreign_page() -> Refusal | None:
 
 
 def _too_large(limit: int) -> Refusal | None:
-    """Refuse by the announced length, before anything is read."""
-    if (request.content_length or 0) > limit:
-        return _refusal(_limit_message(limit), 413)
-    return None
+    """Refuse by the announced length, before anything is read.
+
+    A body without one, which only some servers let through, would be cut at the limit without a word, so it is refused.
+    """
+    length = request.content_length
+    if length is None:
+        hidden = request.environ.get("wsgi.input_terminated") and request.method not in READING
+        return _refusal("corymb needs to know how long a request is", 411) if hidden else None
+    return _refusal(_limit_message(limit), 413) if length > limit else None
 
 
 def _limit_message(limit: int) -> str:

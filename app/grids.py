@@ -1,0 +1,77 @@
+"""The sortable, filterable tables of modules and genes."""
+
+from __future__ import annotations
+
+from collections.abc import Hashable, Sequence
+from typing import Any
+
+import dash_ag_grid as dag
+import numpy as np
+
+from analysis.study import Study
+
+
+def module_grid(study: Study, hues: Sequence[int]) -> Any:
+    """Return the table of modules; a click opens the passport."""
+    table = study.module_table
+    figures = ["internal_density", "conductance", "stability", "evidence", "support", "q_value"]
+    rows = table[["module", "name", "size", *figures]].replace({np.nan: None}).to_dict("records")
+    for position, row in enumerate(rows):
+        row["hue"] = int(hues[position]) if position < len(hues) else -1
+        row["index"] = position
+    columns = [
+        _column("module", "module", 96, cellRenderer="ModuleCell", comparator={"function": "corymbByNumber"}),
+        _column("name", "name", 110, filter="agTextColumnFilter"),
+        _number("size", "size", 74, 0),
+        _number("stability", "stability", 92),
+        _number("support", "support", 88),
+        _number("internal_density", "density", 86),
+        _number("conductance", "conductance", 112),
+        _number("evidence", "evidence", 92),
+        _number("q_value", "q-value", 86, 3),
+    ]
+    return _grid("module-grid", columns, rows, "String(params.data.index)")
+
+
+def gene_grid(study: Study) -> Any:
+    """Return the membership table; a click opens the passport."""
+    names = ["gene", "module", "confidence", "second_module", "degree", "role"]
+    rows = study.membership[names].replace({np.nan: None}).to_dict("records")
+    columns = [
+        _column("gene", "gene", 100, filter="agTextColumnFilter"),
+        _column("module", "module", 90, filter="agTextColumnFilter", comparator={"function": "corymbByNumber"}),
+        _number("confidence", "stays here", 100),
+        _column("second_module", "second home", 108),
+        _number("degree", "degree", 82, 0),
+        _column("role", "role", 140, filter="agTextColumnFilter"),
+    ]
+    return _grid("gene-grid", columns, rows, "params.data.gene + '\\t' + params.data.module")
+
+
+def _grid(grid_id: str, columns: list[dict[str, Any]], rows: list[dict[Hashable, Any]], row_id: str) -> Any:
+    return dag.AgGrid(
+        id=grid_id,
+        columnDefs=columns,
+        rowData=rows,
+        getRowId=row_id,
+        className="ag-theme-quartz",
+        defaultColDef={"sortable": True, "resizable": True, "filter": "agNumberColumnFilter", "suppressMovable": True},
+        dashGridOptions={
+            "rowHeight": 30,
+            "headerHeight": 34,
+            "suppressCellFocus": False,
+            "animateRows": False,
+            "rowSelection": {"mode": "singleRow", "checkboxes": False, "enableClickSelection": True},
+            "theme": "legacy",
+        },
+        style={"height": "300px", "width": "100%"},
+    )
+
+
+def _column(key: str, title: str, width: int, **extra: Any) -> dict[str, Any]:
+    return {"field": key, "headerName": title, "width": width, **extra}
+
+
+def _number(key: str, title: str, width: int, digits: int = 2) -> dict[str, Any]:
+    text = f"params.value == null ? '–' : params.value.toFixed({digits})"
+    return _column(key, title, width, type="rightAligned", valueFormatter={"function": text})

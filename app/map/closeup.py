@@ -1,0 +1,121 @@
+"""The close-up: one module or one gene with its surroundings, nodes movable and edges readable."""
+
+from __future__ import annotations
+
+from typing import Any
+
+import numpy as np
+from numpy.typing import NDArray
+
+from analysis.modules import Modules
+from analysis.network import FloatArray, Network
+from app.map.colours import GREY, PALETTE
+
+NODES_SHOWN = 400
+EDGES_SHOWN = 2500
+SPREAD = 34.0
+
+STYLESHEET: list[dict[str, Any]] = [
+    {
+        "selector": "node",
+        "style": {
+            "background-color": "data(colour)",
+            "label": "data(label)",
+            "width": "data(size)",
+            "height": "data(size)",
+            "font-size": 10,
+            "font-family": "Atkinson Hyperlegible, sans-serif",
+            "color": "#1d2a2f",
+            "text-background-color": "#fbfaf6",
+            "text-background-opacity": 0.75,
+            "text-background-padding": "1px",
+            "text-valign": "bottom",
+            "text-margin-y": 2,
+            "border-width": 1.5,
+            "border-color": "#fbfaf6",
+            "min-zoomed-font-size": 7,
+        },
+    },
+    {"selector": "node.outside", "style": {"background-opacity": 0.45, "color": "#5a6a70"}},
+    {"selector": "node.centre", "style": {"border-width": 3, "border-color": "#1d2a2f", "font-weight": "bold"}},
+    {"selector": "edge", "style": {"width": "data(width)", "line-color": "#9aa5a3", "opacity": 0.55}},
+    {"selector": "edge.inside", "style": {"line-color": "#5a6a70", "opacity": 0.75}},
+    {"selector": "node:selected", "style": {"border-width": 3, "border-color": "#1d2a2f"}},
+]
+
+
+def module_closeup(
+    network: Network, modules: Modules, hues: NDArray[Any], positions: FloatArray, module: int
+) -> tuple[list[dict[str, Any]], str]:
+    """Return the elements of a module with its neighbours, and one sentence on what is shown."""
+    members = modules.members[module]
+    chosen, sentence = _with_neighbours(network, members, f"M{module + 1} with its neighbours")
+    return _elements(
+        network, modules, hues, positions, chosen=chosen, inside=set(members.tolist()), centre=None
+    ), sentence
+
+
+def gene_closeup(
+    network: Network, modules: Modules, hues: NDArray[Any], positions: FloatArray, node: int
+) -> tuple[list[dict[str, Any]], str]:
+    """Return the elements of a gene with its partners, and one sentence on what is shown."""
+    core = np.array([node])
+    chosen, sentence = _with_neighbours(network, core, f"{network.names[node]} with its partners")
+    return _elements(
+        network, modules, hues, positions, chosen=chosen, inside=set(chosen.tolist()), centre=node
+    ), sentence
+
+
+def _with_neighbours(network: Network, core: NDArray[Any], what: str) -> tuple[NDArray[Any], str]:
+    inside = np.zeros(network.node_count, bool)
+    inside[core] = True
+    links = np.bincount(network.targets[inside[network.sources]], minlength=network.node_count)
+    links = links + np.bincount(network.sources[inside[network.targets]], minlength=network.node_count)
+    around = np.flatnonzero((links > 0) & ~inside)
+    around = around[np.argsort(-links[around], kind="stable")]
+    room = max(NODES_SHOWN - len(core), 0)
+    shown = around[:room]
+    kept = core if len(core) <= NODES_SHOWN else core[np.argsort(-network.degree[core], kind="stable")[:NODES_SHOWN]]
+    dropped = len(around) - len(shown) + len(core) - len(kept)
+    tail = f"; {dropped:,} less connected genes are not drawn" if dropped else ""
+    return np.concatenate([kept, shown]), f"{what}: {len(kept) + len(shown):,} genes{tail}."
+
+
+def _elements(
+    network: Network,
+    modules: Modules,
+    hues: NDArray[Any],
+    positions: FloatArray,
+    *,
+    chosen: NDArray[Any],
+    inside: set[int],
+    centre: int | None,
+) -> list[dict[str, Any]]:
+    labels = modules.labels
+    place = positions[chosen] * SPREAD
+    nodes = []
+    for node, (x, y) in zip(chosen.tolist(), place.tolist(), strict=True):
+        label = int(labels[node])
+        colour = PALETTE[int(hues[label])] if label >= 0 and modules.sizes[label] >= 3 else GREY
+        classes = "centre" if node == centre else "" if node in inside else "outside"
+        size = 10 + 2.2 * float(np.sqrt(network.degree[node]))
+        data = {"id": str(node), "label": network.names[node], "colour": colour, "size": size}
+        nodes.append({"data": data, "position": {"x": x, "y": y}, "classes": classes})
+    return nodes + _edges(network, chosen, inside)
+
+
+def _edges(network: Network, chosen: NDArray[Any], inside: set[int]) -> list[dict[str, Any]]:
+    shown = np.zeros(network.node_count, bool)
+    shown[chosen] = True
+    kept = np.flatnonzero(shown[network.sources] & shown[network.targets])
+    weights = network.edge_weights
+    kept = np.sort(kept[np.argsort(-weights[kept], kind="stable")[:EDGES_SHOWN]])
+    top = float(weights[kept].max(initial=1.0)) or 1.0
+    edges = []
+    for edge in kept.tolist():
+        source, target = int(network.sources[edge]), int(network.targets[edge])
+        width = 0.6 + 2.0 * float(weights[edge]) / top if network.weights is not None else 1.2
+        data = {"id": f"e{edge}", "source": str(source), "target": str(target), "width": width}
+        data["weight"] = float(weights[edge])
+        edges.append({"data": data, "classes": "inside" if source in inside and target in inside else ""})
+    return edges

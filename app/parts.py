@@ -1,0 +1,93 @@
+"""Small parts of which the reading pane is made. Pure functions of plain values."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Sequence
+from typing import Any
+
+from dash import html
+
+from app.map.colours import GREY, PALETTE
+
+NOTHING = "–"
+
+
+def sentence(text: str, *, first: bool = False) -> html.P:
+    """Return a sentence; the first one is the verdict, set larger."""
+    return html.P(text, className="verdict" if first else "hint sentence")
+
+
+def sentences(texts: Sequence[str]) -> list[html.P]:
+    """Return sentences, the first as the verdict."""
+    return [sentence(text, first=position == 0) for position, text in enumerate(texts)]
+
+
+def notice(text: str) -> html.Div:
+    """Return a caution."""
+    return html.Div(text, className="notice", role="note")
+
+
+def fault(text: str) -> html.Div:
+    """Return the message of an error."""
+    return html.Div(text, className="fault", role="alert")
+
+
+def heading(text: str) -> html.H2:
+    """Return a heading inside the pane."""
+    return html.H2(text, className="pane-heading")
+
+
+def swatch(hue: int | None) -> html.Span:
+    """Return a small square in a module's colour; grey for none."""
+    colour = GREY if hue is None else PALETTE[hue % len(PALETTE)]
+    return html.Span(className="swatch", style={"background": colour}, **{"aria-hidden": "true"})
+
+
+def bar(value: float, *, doubt: bool = False) -> html.Span:
+    """Return a bar from 0 to 1; doubt is drawn in ochre."""
+    width = 0.0 if math.isnan(value) else min(max(value, 0.0), 1.0)
+    fill = html.Span(style={"width": f"{100 * width:.1f}%"})
+    return html.Span(fill, className="bar", **{"data-doubt": "yes" if doubt else "no", "aria-hidden": "true"})
+
+
+def number(value: float | None, digits: int = 2) -> str:
+    """Return a figure for the screen, a dash where it is missing."""
+    if value is None or (isinstance(value, float) and math.isnan(value)):
+        return NOTHING
+    if isinstance(value, int) or (float(value).is_integer() and abs(value) >= 10):
+        return f"{int(value):,}"
+    return f"{value:.{digits}f}" if abs(value) >= 10**-digits or value == 0 else f"{value:.1e}"
+
+
+def button(text: str, part_id: Any, *, kind: str = "button", **extra: Any) -> html.Button:
+    """Return a button; `kind` is its class."""
+    return html.Button(text, id=part_id, className=kind, type="button", n_clicks=0, **extra)
+
+
+def link(text: str, part_id: Any) -> html.Button:
+    """Return a button that reads as a link."""
+    return button(text, part_id, kind="link")
+
+
+def table(head: Sequence[str], rows: Sequence[Sequence[Any]], *, numeric: Sequence[int] = (), name: str) -> html.Table:
+    """Return a plain table; `numeric` names the columns that are set to the right."""
+
+    def cell(kind: Any, position: int, content: Any) -> Any:
+        extra = {"scope": "col"} if kind is html.Th else {}
+        return kind(content, className="number" if position in numeric else "", **extra)
+
+    return html.Table(
+        [
+            html.Thead(html.Tr([cell(html.Th, position, text) for position, text in enumerate(head)])),
+            html.Tbody([html.Tr([cell(html.Td, place, each) for place, each in enumerate(row)]) for row in rows]),
+        ],
+        className="table",
+        **{"aria-label": name},
+    )
+
+
+def field(label: str, control: Any, hint: str = "") -> html.Label:
+    """Return a labelled control with a hint below."""
+    parts = [html.Span(label, className="field-label"), control]
+    return html.Label([*parts, html.Span(hint, className="hint")] if hint else parts, className="field")

@@ -1,0 +1,12 @@
+"""Stations: one file each; the registry is the order of the path.
+
+A station module has `KEY`, `TITLE`, `state(view)` (`done`, `stale` or `empty`) and `render(view)`, which returns a
+`Pane`. Callbacks of its own stand in `app/wiring/`, in a file of the same name.
+"""
+
+from __future__ import annotations
+
+from app.stations import handover, intake, modules, trust
+
+STATIONS = {station.KEY: station for station in (intake, modules, trust, handover)}
+START = modules.KEY

@@ -1,0 +1,124 @@
+"""Modules: the clustering at hand, its modules and genes, and the trail of clusterings."""
+
+from __future__ import annotations
+
+import math
+from typing import Any
+
+from dash import dcc, html
+
+from analysis.methods import METHODS
+from analysis.study import Study
+from analysis.verdicts import STRUCTURE_CAUTION
+from app.grids import gene_grid, module_grid
+from app.parts import button, fault, field, heading, notice, number, sentence, sentences, table
+from app.ruler import QUESTIONS
+from app.view import Pane, View
+
+KEY = "modules"
+TITLE = "Modules"
+METHOD_LABELS = {
+    "leiden": "Leiden",
+    "louvain": "Louvain",
+    "clique-percolation": "clique percolation",
+}
+TRAIL_SHOWN = 30
+
+
+def state(view: View) -> str:
+    """Return how far the station is."""
+    if view.study is None:
+        return "empty"
+    return "done"
+
+
+def render(view: View) -> Pane:
+    """Return the verdict, the tables of modules and genes, the method's settings and the trail."""
+    body: list[Any] = [fault(view.fault)] if view.fault else []
+    if view.study is None:
+        body.append(sentence("The modules are being worked out.", first=True))
+        return Pane(TITLE, [*body, *_settings(view)], [])
+    study = view.study
+    body += sentences(_brief(study))
+    body.append(notice(STRUCTURE_CAUTION))
+    body += [
+        dcc.Tabs(
+            [
+                dcc.Tab(module_grid(study, view.hues()), label="modules", value="modules"),
+                dcc.Tab(gene_grid(study), label="genes", value="genes"),
+            ],
+            value="modules",
+            className="tabs",
+            persistence=True,
+            persistence_type="session",
+            id="tables",
+        )
+    ]
+    body += _settings(view)
+    body += _trail(view)
+    return Pane(TITLE, body, [button("Hand over genes", {"type": "go", "station": "handover"}, kind="button primary")])
+
+
+def _brief(study: Study) -> list[str]:
+    return list(study.sentences)
+
+
+def _settings(view: View) -> list[Any]:
+    wanted = view.wanted
+    options = [{"label": METHOD_LABELS[key], "value": key} for key in METHODS]
+    controls = [
+        field(
+            "method",
+            dcc.Dropdown(options, wanted["method"], id="method", clearable=False, searchable=False),
+        ),
+        field("seed", dcc.Input(value=wanted["seed"], type="number", min=0, step=1, id="seed", debounce=True)),
+    ]
+    if wanted["method"] == "clique-percolation":
+        hint = "a community is a chain of groups of k genes, all joined, each sharing all but one with the next"
+        control = dcc.Input(value=wanted["k"], type="number", min=2, max=100, step=1, id="k", debounce=True)
+        controls.insert(1, field("k", control, hint))
+    return [heading("How they are found"), html.Div(controls, className="fields")]
+
+
+def _trail(view: View) -> list[Any]:
+    if not view.fingerprint:
+        return []
+    entries = _distinct(view.desk.workspace.trail(view.fingerprint))
+    if len(entries) < 2:
+        return []
+    rows = [
+        [
+            html.Span(
+                button(entry.name or _line(entry.settings), {"type": "return-to", "study": entry.id}, kind="link"),
+                **({"aria-current": "true"} if entry.id == view.study_id else {}),
+            ),
+            f"{entry.figures['modules']:,}",
+            number(entry.figures["modularity"], 3),
+            number(entry.figures["noise_ami"]),
+        ]
+        for entry in reversed(entries[-TRAIL_SHOWN:])
+    ]
+    head = ["clustering", "modules", "modularity", "noise AMI"]
+    return [heading("Trail"), table(head, rows, numeric=[1, 2, 3], name="Trail of clusterings")]
+
+
+def _distinct(entries: list[Any]) -> list[Any]:
+    """Keep one line per clustering: the same settings with and without null networks give the same modules."""
+    kept: dict[Any, Any] = {}
+    for entry in entries:
+        settings = {key: value for key, value in entry.settings.items() if key != "nulls"}
+        kept[repr(sorted(settings.items(), key=str))] = entry
+    return list(kept.values())
+
+
+def _line(settings: Any) -> str:
+    """Return the settings of a clustering in one line."""
+    label = METHOD_LABELS.get(settings["method"], settings["method"])
+    if settings["method"] == "clique-percolation":
+        return f"{label}, k = {settings['k']}"
+    if settings["method"] == "harvest":
+        return f"{label}, seed {settings['seed']}"
+    resolution = settings["resolution"]
+    shown = f"{resolution:.3g}" if isinstance(resolution, float | int) and math.isfinite(resolution) else resolution
+    asked = QUESTIONS[settings["quality"]].label if settings["method"] == "leiden" else "wide neighbourhoods"
+    return f"{label}, {asked}, {shown}, seed {settings['seed']}"

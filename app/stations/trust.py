@@ -1,0 +1,91 @@
+"""Trust: what survives another seed, missing edges, another resolution, and chance."""
+
+from __future__ import annotations
+
+from typing import Any
+
+from dash import html
+
+from analysis.study import Study
+from analysis.verdicts import CLUSTERED_CAUTION, is_firm
+from app.parts import bar, button, heading, link, notice, number, sentence, sentences, table
+from app.view import Pane, View
+
+KEY = "trust"
+TITLE = "Trust"
+DOUBTFUL_SHOWN = 40
+STRIP_SHOWN = 60
+
+
+def state(view: View) -> str:
+    """Return how far the station is: done once null networks were run too."""
+    if view.study is None:
+        return "empty"
+    return "done" if view.study.nulls is not None or view.study.copies else "empty"
+
+
+def render(view: View) -> Pane:
+    """Return the verdict on the whole, the modules by stability, and the genes in doubt."""
+    study = view.study
+    if study is None:
+        return Pane(TITLE, [sentence("There is no clustering yet.", first=True)], [])
+    body: list[Any] = [*sentences(study.sentences), *_strip(study), *_doubtful(study), notice(CLUSTERED_CAUTION)]
+    return Pane(TITLE, body, [] if study.nulls is not None else [chance_button()])
+
+
+def _strip(study: Study) -> list[Any]:
+    """Return the modules, largest first, with how often they come back."""
+    rows = []
+    for module in range(min(len(study.modules), STRIP_SHOWN)):
+        row = study.module_table.iloc[module]
+        if row["size"] < 3:
+            break
+        returned = "–" if study.returned is None else f"{study.returned[module]} of {study.copies}"
+        title = f"{row['module']} {row['name']}".strip()
+        rows.append(
+            [
+                link(title, {"type": "pick-module", "index": module}),
+                f"{row['size']}",
+                bar(float(row["stability"]), doubt=not is_firm(study, module)),
+                number(float(row["stability"])),
+                returned,
+                number(float(row["support"])),
+                number(float(row["q_value"]), 3),
+            ]
+        )
+    if not rows:
+        return []
+    head = ["module", "size", "stability", "", "copies", "support", "q-value"]
+    hint = (
+        "Stability is the mean overlap of a module with its best match; copies counts the noisy copies in which it "
+        "comes back; support is stability times evidence and orders modules by how likely they are real. It is no probability."
+    )
+    return [
+        heading("Modules"),
+        html.P(hint, className="hint"),
+        table(head, rows, numeric=[1, 3, 4, 5, 6], name="Modules by stability"),
+    ]
+
+
+def _doubtful(study: Study) -> list[Any]:
+    table_ = study.membership[study.membership["confidence"] < 0.9].nsmallest(DOUBTFUL_SHOWN, "confidence")
+    if table_.empty:
+        return []
+    rows = [
+        [
+            link(row["gene"], {"type": "pick-gene", "gene": row["gene"]}),
+            row["module"],
+            bar(float(row["confidence"]), doubt=row["confidence"] < 0.75),
+            number(float(row["confidence"])),
+            row["second_module"] if isinstance(row["second_module"], str) else "–",
+            number(float(row["second_confidence"])),
+        ]
+        for _, row in table_.iterrows()
+    ]
+    head = ["gene", "module", "stays", "", "second home", ""]
+    return [heading("Genes in doubt"), table(head, rows, numeric=[3, 5], name="Genes in doubt")]
+
+
+def chance_button() -> Any:
+    """Return the button that compares with null networks."""
+    return button("Compare with chance", {"type": "compare-with-chance", "index": 0}, kind="button primary")

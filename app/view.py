@@ -1,0 +1,69 @@
+"""What a window shows: the place, the thing picked, and the answers at hand. Passed to every station."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+from typing import Any
+
+from analysis.network import Network
+from analysis.study import Study
+from app.desk import Desk
+
+
+@dataclass(frozen=True, eq=False)
+class View:
+    """One window's state, as a station needs it.
+
+    Attributes
+    ----------
+    desk : Desk
+    fingerprint : str or None
+        Of the network at hand.
+    wanted : mapping
+        Settings of the clustering that the window asks for: `method, quality, resolution, k, seed, nulls`.
+    study : Study or None
+        The finished study shown, with names.
+    study_id : str or None
+    fault : str
+        Message of the last error; empty for none.
+    """
+
+    desk: Desk
+    fingerprint: str | None
+    wanted: Mapping[str, Any]
+    study: Study | None
+    study_id: str | None
+    fault: str = ""
+
+    @property
+    def network(self) -> Network | None:
+        """Return the network at hand."""
+        return self.desk.network(self.fingerprint) if self.fingerprint else None
+
+    def hues(self) -> Sequence[int]:
+        """Return the hue of every module of the study shown."""
+        from app.map.colours import follow
+
+        drawing = self.desk.drawing(self.fingerprint) if self.fingerprint else None
+        if drawing is None or self.study is None:
+            return []
+        return [int(hue) for hue in follow(drawing[1], self.study.modules)]
+
+
+@dataclass(frozen=True)
+class Pane:
+    """What a station or a passport puts into the reading pane.
+
+    Attributes
+    ----------
+    title : str
+        Of the place, for the crumb line.
+    body : list of components
+    actions : list of components
+        Buttons that stay in view at the pane's end.
+    """
+
+    title: str
+    body: list[Any]
+    actions: list[Any]

@@ -1,0 +1,15 @@
+"""Callbacks: each reads ids, asks the desk, returns components. One file per subject."""
+
+from __future__ import annotations
+
+from dash import Dash
+
+from app.desk import Desk
+from app.wiring import clientside, closeup, modules, network, pane, picking, progress
+
+
+def wire(app: Dash, desk: Desk) -> None:
+    """Add all callbacks to the application."""
+    for subject in (network, modules, progress, pane, picking, closeup):
+        subject.wire(app, desk)
+    clientside.wire(app)

@@ -1,0 +1,330 @@
+// Joins Dash's callbacks to the map and the ruler. The only place where the two know of each other.
+"use strict";
+
+(() => {
+  const palette = [
+    "#0072b2", "#e69f00", "#009e73", "#cc79a7", "#56b4e9", "#d55e00", "#5b4ea3", "#b3a800",
+    "#3d7a2b", "#a0522d", "#1f9e9a", "#c2478b", "#7a6ff0", "#8c6d1f",
+  ];
+  const none = 0xffff;
+  const state = {
+    network: null, // address of the network on the map
+    loaded: Promise.resolve(),
+    sizeCut: 5,
+    shown: null, // decoded colours of the study shown
+    shownId: null,
+    names: {},
+    ruler: null, // last data of the ruler
+    wanted: null,
+    cache: new Map(), // address → decoded colours, newest last
+    dragging: false,
+    turn: 0,
+  };
+  const noUpdate = () => window.dash_clientside.no_update;
+  const setProps = (id, props) => window.dash_clientside.set_props(id, props);
+  const text = (id, value) => {
+    const element = document.getElementById(id);
+    if (element && element.textContent !== value) element.textContent = value;
+  };
+
+  // --- colours -------------------------------------------------------------------------------------------------
+
+  /** Decodes what the server packs: counts, a hue per module, a module per node. */
+  function decode(buffer) {
+    const [modules, nodes] = new Uint32Array(buffer, 0, 2);
+    const hues = new Uint16Array(buffer, 8, modules);
+    const labels = new Uint16Array(buffer.slice(8 + 2 * modules, 8 + 2 * modules + 2 * nodes));
+    const sizes = new Uint32Array(modules);
+    for (const label of labels) if (label !== none) sizes[label] += 1;
+    return { modules, hues, labels, sizes };
+  }
+
+  async function colours(url) {
+    if (state.cache.has(url)) return state.cache.get(url);
+    const answer = await fetch(url);
+    if (!answer.ok) return null;
+    const decoded = decode(await answer.arrayBuffer());
+    state.cache.set(url, decoded);
+    while (state.cache.size > 90) state.cache.delete(state.cache.keys().next().value);
+    return decoded;
+  }
+
+  function paint(decoded, names) {
+    const numbers = [];
+    for (let module = 0; module < decoded.modules; module += 1) {
+      const number = `M${module + 1}`;
+      numbers.push(names[number] ? `${number} ${names[number]}` : number);
+    }
+    window.corymb.map.colour({
+      labels: decoded.labels,
+      hues: Array.from(decoded.hues, (hue) => palette[hue % palette.length]),
+      numbers,
+      grey: Uint8Array.from(decoded.sizes, (size) => (size < state.sizeCut ? 1 : 0)),
+    });
+  }
+
+  function describe(decoded, resolution) {
+    if (resolution !== null) text("state-resolution", resolution < 10 ? resolution.toPrecision(2) : resolution.toFixed(0));
+    const large = decoded.sizes.reduce((count, size) => count + (size >= state.sizeCut ? 1 : 0), 0);
+    const count = decoded.modules.toLocaleString("en");
+    text("state-count", `${count} modules, ${large.toLocaleString("en")} of ${state.sizeCut} genes or more`);
+  }
+
+  const rulerUrl = (index) => `/data/${state.ruler.network}/ruler/${state.ruler.quality}/${index}?v=${state.ruler.version}`;
+
+  /** Fetches the partitions of the ruler ahead, nearest to the marker first, so that the marker never waits. */
+  async function fetchAhead() {
+    const turn = (state.turn += 1);
+    const ruler = state.ruler;
+    if (ruler.busy) return;
+    const here = nearest(ruler.grid, state.wanted ? state.wanted.resolution : 1);
+    const order = ruler.grid.map((_, index) => index).sort((a, b) => Math.abs(a - here) - Math.abs(b - here));
+    for (const index of order) {
+      if (turn !== state.turn) return;
+      if (ruler.modules[index] !== null) await colours(rulerUrl(index));
+    }
+  }
+
+  function nearest(grid, value) {
+    let best = 0;
+    grid.forEach((each, index) => {
+      if (Math.abs(Math.log(each / value)) < Math.abs(Math.log(grid[best] / value))) best = index;
+    });
+    return best;
+  }
+
+  async function preview(index) {
+    await state.loaded;
+    const decoded = await colours(rulerUrl(index));
+    if (!decoded) return;
+    paint(decoded, {});
+    describe(decoded, state.ruler.grid[index]);
+  }
+
+  // --- called by Dash ------------------------------------------------------------------------------------------
+
+  const callbacks = {
+    load(order) {
+      if (!order || state.network === order.url) return noUpdate();
+      state.network = order.url;
+      state.cache.clear();
+      state.shown = null;
+      state.shownId = null;
+      state.ruler = null;
+      state.loaded = Promise.resolve(window.corymb.map.load({ url: order.url, names: null, label: order.label }));
+      return noUpdate();
+    },
+
+    async colour(shown, _names, order, sizeCut, station) {
+      state.sizeCut = Math.max(1, Number(sizeCut) || 1);
+      if (!order || !shown || shown.network !== order.fingerprint) {
+        if (state.shown) paint(state.shown, state.names);
+        return noUpdate();
+      }
+      await state.loaded;
+      const url = `/data/study/${shown.study}`;
+      const [decoded, names] = await Promise.all([colours(url), fetch(`${url}/names`).then((answer) => answer.json())]);
+      if (!decoded || state.network !== order.url) return noUpdate();
+      state.shown = decoded;
+      state.shownId = shown.study;
+      state.names = names;
+      if (!state.dragging) {
+        paint(decoded, names);
+        describe(decoded, null);
+      }
+      await confidence(url, station === "trust");
+      return noUpdate();
+    },
+
+    ruler(data, wanted) {
+      state.wanted = wanted;
+      const known = data && wanted && data.network === wanted.network && data.quality === wanted.quality;
+      const questions = document.querySelectorAll("#question-switch button");
+      questions.forEach((button) => {
+        const asked = wanted && wanted.method === "leiden" && JSON.parse(button.id).quality === wanted.quality;
+        button.setAttribute("aria-pressed", asked ? "true" : "false");
+      });
+      if (wanted) {
+        const optimised = wanted.method === "leiden" || wanted.method === "louvain";
+        text("state-unit", !optimised ? "" : wanted.quality === "cpm" ? "inside density" : "resolution");
+        if (!state.dragging) text("state-resolution", optimised ? Number(wanted.resolution).toPrecision(2) : "");
+      }
+      if (!known) return noUpdate();
+      const before = state.ruler;
+      state.ruler = data;
+      window.corymb.ruler.draw({
+        ...data,
+        value: wanted.resolution,
+        label: "number of modules (the band widens where copies of the network disagree)",
+      });
+      if (!before || before.version !== data.version || before.network !== data.network || before.quality !== data.quality) {
+        fetchAhead();
+        if (!state.shown) preview(nearest(data.grid, wanted.resolution));
+      }
+      return noUpdate();
+    },
+
+    async select(pick) {
+      await state.loaded;
+      const kind = pick ? pick.kind : "nothing";
+      const module = kind === "module" ? pick.index : null;
+      const genes = kind === "gene" ? [pick.index] : kind === "list" ? pick.genes : [];
+      window.corymb.map.select({ module, genes });
+      if (pick && pick.focus && (genes.length || module !== null)) {
+        window.corymb.map.focus(module !== null ? { module } : { genes });
+      }
+      return noUpdate();
+    },
+
+    save(order) {
+      if (!order) return noUpdate();
+      const anchor = document.createElement("a");
+      anchor.href = order.url;
+      anchor.download = "";
+      document.body.append(anchor);
+      anchor.click();
+      anchor.remove();
+      return noUpdate();
+    },
+
+    theme(clicks) {
+      if (clicks) remember("theme", document.documentElement.dataset.theme === "dark" ? "light" : "dark");
+      return noUpdate();
+    },
+
+    projector(clicks) {
+      if (clicks) remember("projector", document.documentElement.dataset.projector === "on" ? "off" : "on");
+      return noUpdate();
+    },
+  };
+
+  async function confidence(url, on) {
+    if (!on) {
+      window.corymb.map.confidence(null, false);
+      return;
+    }
+    const answer = await fetch(`${url}/confidence`);
+    if (answer.ok) window.corymb.map.confidence(new Float32Array(await answer.arrayBuffer()), true);
+  }
+
+  function remember(key, value) {
+    document.documentElement.dataset[key] = value;
+    try {
+      localStorage.setItem(`corymb-${key}`, value);
+    } catch (error) {
+      if (!(error instanceof DOMException)) throw error; // a browser that keeps nothing: the choice holds until reload
+    }
+  }
+
+  function recall(key) {
+    try {
+      return localStorage.getItem(`corymb-${key}`);
+    } catch (error) {
+      if (!(error instanceof DOMException)) throw error;
+      return null;
+    }
+  }
+
+  // --- uploads -------------------------------------------------------------------------------------------------
+
+  async function upload(file) {
+    const drop = document.getElementById("drop");
+    if (drop) drop.dataset.busy = "yes";
+    const form = new FormData();
+    form.append("file", file);
+    let answer;
+    try {
+      const response = await fetch("/upload", { method: "POST", body: form });
+      answer = response.headers.get("Content-Type")?.includes("json")
+        ? await response.json()
+        : { fault: response.status === 413 ? `${file.name}: is larger than can be taken; gzip it or cut it by score.` : `${file.name}: could not be taken (status ${response.status}).` };
+    } catch (error) {
+      answer = { fault: `${file.name}: could not be sent; is corymb still running? (${error.message})` };
+    }
+    if (drop) delete drop.dataset.busy;
+    setProps("from-upload", { data: { ...answer, moment: Date.now() } });
+  }
+
+  function choose() {
+    const picker = document.createElement("input");
+    picker.type = "file";
+    picker.addEventListener("change", () => picker.files.length && upload(picker.files[0]));
+    picker.click();
+  }
+
+  document.addEventListener("click", (event) => {
+    if (event.target.closest && event.target.closest("#drop")) choose();
+  });
+  document.addEventListener("dragover", (event) => {
+    if (!event.dataTransfer || !Array.from(event.dataTransfer.types).includes("Files")) return;
+    event.preventDefault();
+    const drop = document.getElementById("drop");
+    if (drop) drop.dataset.over = "yes";
+  });
+  document.addEventListener("dragleave", () => {
+    const drop = document.getElementById("drop");
+    if (drop) delete drop.dataset.over;
+  });
+  document.addEventListener("drop", (event) => {
+    if (!event.dataTransfer || !event.dataTransfer.files.length) return;
+    event.preventDefault();
+    upload(event.dataTransfer.files[0]);
+  });
+
+  // --- keys ----------------------------------------------------------------------------------------------------
+
+  document.addEventListener("keydown", (event) => {
+    const typing = /^(INPUT|TEXTAREA|SELECT)$/.test(document.activeElement?.tagName || "");
+    const drop = document.activeElement?.id === "drop";
+    if (drop && (event.key === "Enter" || event.key === " ")) {
+      event.preventDefault();
+      choose();
+    } else if (event.key === "/" && !typing) {
+      event.preventDefault();
+      document.getElementById("find")?.focus();
+    } else if (event.key === "Escape") {
+      document.activeElement?.blur?.();
+      setProps("from-map", { data: { kind: "nothing", index: -1, moment: Date.now() } });
+    }
+  });
+
+  // --- from the map and the ruler --------------------------------------------------------------------------------
+
+  window.corymb = window.corymb || {};
+  function join() {
+    window.corymb.map.onPick = (picked) => setProps("from-map", { data: { ...picked, moment: Date.now() } });
+    window.corymb.ruler.onMove = (index) => {
+      state.dragging = true;
+      preview(index);
+    };
+    window.corymb.ruler.onRest = (index, value) => {
+      state.dragging = false;
+      preview(index);
+      setProps("from-ruler", { data: { index, value, moment: Date.now() } });
+    };
+  }
+
+  // --- tables ----------------------------------------------------------------------------------------------------
+
+  const numberOf = (value) => Number(String(value ?? "").replace(/^M/, "")) || 0;
+  window.dashAgGridFunctions = window.dashAgGridFunctions || {};
+  window.dashAgGridFunctions.corymbByNumber = (one, other) => numberOf(one) - numberOf(other);
+  window.dashAgGridComponentFunctions = window.dashAgGridComponentFunctions || {};
+  window.dashAgGridComponentFunctions.ModuleCell = (props) =>
+    window.React.createElement("span", null, [
+      window.React.createElement("span", {
+        key: "swatch",
+        className: "swatch",
+        style: { background: props.data.hue < 0 || props.data.size < 3 ? "#9aa5a3" : palette[props.data.hue % palette.length] },
+      }),
+      window.React.createElement("span", { key: "number" }, ` ${props.value}`),
+    ]);
+
+  for (const key of ["theme", "projector"]) {
+    const kept = recall(key);
+    if (kept) document.documentElement.dataset[key] = kept;
+  }
+  document.addEventListener("DOMContentLoaded", join);
+  if (document.readyState !== "loading") join();
+  window.dash_clientside = Object.assign({}, window.dash_clientside, { corymb: callbacks });
+})();
