@@ -34,7 +34,7 @@ def planted_network(
     sizes: Sequence[int],
     *,
     seed: int,
-    inside: float = 0.6,
+    inside: float | Sequence[float] = 0.6,
     outside_degree: float = 4.0,
     regions: Sequence[tuple[int, float]] = (),
     spread: float = 2.5,
@@ -48,8 +48,8 @@ def planted_network(
     ----------
     sizes : sequence of int
         Size of each planted module.
-    inside : float
-        Probability of each edge inside a module.
+    inside : float or sequence of float
+        Probability of each edge inside a module; one for all, or one for each.
     outside_degree : float
         Mean number of random edges of a node, over the whole network.
     regions : sequence of (int, float)
@@ -62,7 +62,8 @@ def planted_network(
     count = len(blocks)
     labels = np.concatenate([labels, np.full(count - len(labels), -1)])
     propensity = np.minimum((random.pareto(spread - 1, count) + 1) * (spread - 2) / (spread - 1), 8.0)
-    pairs = [_within(np.flatnonzero(blocks == block), inside, random) for block in range(len(sizes))]
+    density = np.broadcast_to(inside, len(sizes))
+    pairs = [_within(np.flatnonzero(blocks == block), density[block], random) for block in range(len(sizes))]
     for index, (size, degree) in enumerate(regions):
         nodes = np.flatnonzero(blocks == len(sizes) + index)
         pairs.append(nodes[_random_pairs(propensity[nodes], round(size * degree / 2), random)])

@@ -15,13 +15,19 @@ EDGES_EXCEED = 0.05
 DENSITY_SHARE = 0.4
 
 
+def order_score(support: FloatArray, sizes: NDArray[np.int64]) -> FloatArray:
+    """Return ``support · size^0.1``, down which modules are taken: of equal support the larger goes first."""
+    score: FloatArray = support * sizes.astype(np.float64) ** SIZE_EXPONENT
+    return score
+
+
 def take(members: Sequence[IntArray], support: FloatArray, node_count: int) -> NDArray[np.int64]:
     """Return the positions of the modules taken, best first; see `analysis.trust.harvest.run_harvest`, step 4.
 
     Modules without support are not taken. Of equal ones the first goes first.
     """
-    sizes = np.array([len(group) for group in members], np.float64)
-    order = np.argsort(-support * sizes**SIZE_EXPONENT, kind="stable")
+    score = order_score(support, np.array([len(group) for group in members], np.int64))
+    order = np.argsort(-score, kind="stable")
     used = np.zeros(node_count, bool)
     taken = []
     for module in order[support[order] > 0].tolist():
@@ -32,24 +38,23 @@ def take(members: Sequence[IntArray], support: FloatArray, node_count: int) -> N
     return np.array(taken, np.int64)
 
 
-def chance_shares(support: FloatArray, null_support: Sequence[FloatArray]) -> FloatArray:
-    """Return the nominal share of chance modules among those of at least each module's support, shape (modules,).
+def chance_shares(scores: FloatArray, null_scores: Sequence[FloatArray]) -> FloatArray:
+    """Return the nominal share of chance modules among those of at least each module's score, shape (modules,).
 
-    ``min over t ≤ s of [mean number of null modules with support ≥ t] / [number of modules with support ≥ t]``, at
-    most 1.
+    ``min over t ≤ s of [mean number of null modules with score ≥ t] / [number of modules with score ≥ t]``, at most 1.
 
     Parameters
     ----------
-    support : float64 array, shape (modules,)
-    null_support : sequence of float64 arrays
-        Support of the modules taken from each null network.
+    scores : float64 array, shape (modules,)
+    null_scores : sequence of float64 arrays
+        Scores of the modules taken from each null network.
     """
-    order = np.argsort(support, kind="stable")
-    ascending = support[order]
-    nulls = np.sort(np.concatenate([*null_support, np.zeros(0)]))
-    by_chance = (len(nulls) - np.searchsorted(nulls, ascending, side="left")) / max(len(null_support), 1)
+    order = np.argsort(scores, kind="stable")
+    ascending = scores[order]
+    nulls = np.sort(np.concatenate([*null_scores, np.zeros(0)]))
+    by_chance = (len(nulls) - np.searchsorted(nulls, ascending, side="left")) / max(len(null_scores), 1)
     found = len(ascending) - np.searchsorted(ascending, ascending, side="left")
-    shares = np.empty(len(support))
+    shares = np.empty(len(scores))
     shares[order] = np.minimum(np.minimum.accumulate(by_chance / np.maximum(found, 1)), 1.0)
     return shares
 

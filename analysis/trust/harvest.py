@@ -14,7 +14,7 @@ from analysis.modules import Modules
 from analysis.network import FloatArray, IntArray, Network, locked
 from analysis.progress import Progress, portion, silent
 from analysis.trust.chains import ChainTask, LabelTable
-from analysis.trust.gathering import add_genes, chance_shares, take
+from analysis.trust.gathering import add_genes, chance_shares, order_score, take
 from analysis.trust.harvest_result import FULL, NULL_COPIES, QUICK, Harvest, HarvestSettings
 from analysis.trust.module_pool import ModulePool, pool_modules
 from analysis.trust.support import CopySettings, ModuleSupport, copy_tasks, holding, run_tasks, support_from
@@ -37,7 +37,7 @@ def harvest_tasks(settings: HarvestSettings) -> list[ChainTask]:
 def run_harvest(network: Network, settings: HarvestSettings, compute: Compute, progress: Progress = silent) -> Harvest:
     """Harvest a network: take modules each at its own resolution, by support, down to where chance begins.
 
-    The rule, with the sources of its parts; the whole was chosen on networks with known modules (DEVELOPERS.md):
+    The rule, with the sources of its parts; the whole was chosen on networks with known modules, and tried on others:
 
     1. *Sweep.* Chains of Leiden runs (Traag, Waltman & van Eck 2019) on the constant Potts model (Traag, Van Dooren &
        Nesterov 2011), from fine to coarse, resolutions from 0.01 to 0.9; 24 with three seeds (`FULL`) or 12 with one
@@ -49,9 +49,9 @@ def run_harvest(network: Network, settings: HarvestSettings, compute: Compute, p
     4. *Take.* Down the order of ``support · size^0.1``, take a module if at most a quarter of its genes are in
        modules taken before.
     5. *Cut.* Steps 1 to 4 on degree-preserving null networks (Maslov & Sneppen 2002) with one seed and five copies.
-       Keep modules down to the lowest support at which the mean number from a null is at most `level` times the
-       network's own: a false discovery rate by permutation (Storey & Tibshirani 2003, the share of true nulls set to
-       1). Optimistic: at 0.1 about 0.17 were wrong.
+       Keep modules down to the lowest ``support · size^0.1`` at which the mean number from a null is at most `level`
+       times the network's own: a false discovery rate by permutation (Storey & Tibshirani 2003, the share of true
+       nulls set to 1). Optimistic: at 0.1 about 0.17 were wrong.
     6. *Add* a gene `u` to a module `C` of the kept ones where its edges into `C` exceed chance,
        ``n · P[Bin(k_u, K_C/2m) ≥ k_uC] < 0.05`` (`n` genes, `m` edges, `k_u` its degree, `K_C` summed degree of `C`),
        and reach 0.4 of the density of `C`: ``k_uC ≥ 0.4 · density · |C|`` (edges counted, weights not used).
@@ -68,8 +68,8 @@ def run_harvest(network: Network, settings: HarvestSettings, compute: Compute, p
     report = portion(progress, 0.85, 1.0)
     crop = _gather(network, settings, tables[:own], settings.seeds, portion(report, 0.0, 0.5))
     null_seeds = [task.null_seed for task in tasks[own :: 1 + NULL_COPIES] if task.null_seed is not None]
-    null_support = _harvest_nulls(network, settings, null_seeds, tables[own:], portion(report, 0.5, 1.0))
-    shares = chance_shares(crop.support, null_support) if null_seeds else np.full(len(crop.taken), np.nan)
+    null_scores = _harvest_nulls(network, settings, null_seeds, tables[own:], portion(report, 0.5, 1.0))
+    shares = chance_shares(crop.scores, null_scores) if null_seeds else np.full(len(crop.taken), np.nan)
     kept = shares <= settings.level if settings.cut else np.ones(len(crop.taken), bool)
     report(1.0, "scoring the modules")
     return _assemble(network, settings, crop, kept, shares)
@@ -84,9 +84,9 @@ class _Crop:
     taken: NDArray[np.int64]
 
     @property
-    def support(self) -> FloatArray:
-        """Support of those taken."""
-        return self.figures.support[self.taken]
+    def scores(self) -> FloatArray:
+        """Score of those taken, by which they were; falling."""
+        return order_score(self.figures.support, self.pool.sizes)[self.taken]
 
 
 def _gather(
@@ -107,7 +107,7 @@ def _harvest_nulls(
     tables: Sequence[LabelTable],
     progress: Progress,
 ) -> list[FloatArray]:
-    """Return the support of the modules taken from each null network."""
+    """Return the scores of the modules taken from each null network."""
     from analysis.trust.nulls import rewire
 
     chains = 1 + NULL_COPIES
@@ -115,7 +115,7 @@ def _harvest_nulls(
     for place, null_seed in enumerate(null_seeds):
         report = portion(progress, place / len(null_seeds), (place + 1) / len(null_seeds))
         own = tables[place * chains : (place + 1) * chains]
-        found.append(_gather(rewire(network, null_seed), settings, own, 1, report).support)
+        found.append(_gather(rewire(network, null_seed), settings, own, 1, report).scores)
     return found
 
 
@@ -129,7 +129,7 @@ def _assemble(
     chosen, share = chosen[order], shares[kept][order]
     figures = crop.figures
     rank = np.empty(len(order), np.int64)
-    rank[np.argsort(-figures.support[chosen], kind="stable")] = np.arange(1, len(order) + 1)
+    rank[np.argsort(order, kind="stable")] = np.arange(1, len(order) + 1)  # `chosen` was in the order of taking
     modules = Modules.from_members(
         network.node_count,
         [grown[place] for place in order],

@@ -82,9 +82,9 @@ class Harvest:
     resolution : float64 array
         Where in the sweep each was found (geometric mean, if more than once).
     rank : int64 array
-        1 for the best supported.
+        1 for the module taken first: the order is that of ``support · size^0.1``.
     chance_share : float64 array
-        Nominal share of chance modules among those of at least this support; NaN without null networks. Optimistic.
+        Nominal share of chance modules among those down to this rank; NaN without null networks. Optimistic.
     pooled : int
         Distinct modules of the sweep from which these were taken.
     held : int
@@ -115,21 +115,20 @@ class Harvest:
             return "No null networks were harvested, so it is not known how many of these modules chance would yield."
         if self.settings.cut and self.settings.level == 0.1:
             return (
-                "About one in six modules of this support or more is expected to be a chance module: the cut stands where "
+                "About one in six modules harvested like this is expected to be a chance module: the cut stands where "
                 "random networks with the same degrees yield a tenth as many, and on networks with known modules 17 "
                 "in 100 were wrong there."
             )
+        asked = f"{100 * self.settings.level:.3g} for every 100"
         if self.settings.cut:
             return (
-                f"Random networks with the same degrees yield at most {100 * self.settings.level:.3g} modules of this "
-                "support or more for every 100 here; the true share of chance modules is likely higher (17 in 100 "
-                "where 10 were asked for, on networks with known modules)."
+                f"The cut stands where random networks with the same degrees yield {asked} modules; the true share of "
+                "chance modules is likely higher (17 in 100 where 10 were asked for, on networks with known modules)."
             )
         within = int((self.chance_share <= self.settings.level).sum())
         return (
-            f"All {self.held:,} modules that hold are kept. {within:,} of them have support at which random networks "
-            f"with the same degrees yield at most {100 * self.settings.level:.3g} for every 100; the others may be "
-            "chance modules."
+            f"All {self.held:,} modules that hold are kept. Down to number {within:,} random networks with the same "
+            f"degrees yield at most {asked}; the others may well be chance modules."
         )
 
     def _empty_sentence(self) -> str:
