@@ -4,13 +4,16 @@ from __future__ import annotations
 
 import base64
 import hashlib
+import http.client
 import io
+import threading
 from html.parser import HTMLParser
 
 import pytest
 from dash import Dash, Input, Output, dcc, html
 from flask import Flask, Response, request
 from flask.testing import FlaskClient
+from waitress import create_server
 
 from app.guards import install_guards
 
@@ -133,15 +136,34 @@ def test_uploads_have_a_limit(client: FlaskClient):
     assert large.mimetype == "text/plain"
 
 
-def test_a_body_that_hides_its_length_has_the_limit_too(client: FlaskClient):
+def test_a_body_that_hides_its_length_is_refused(client: FlaskClient):
     answer = client.post(
         "/raw",
         headers=OWN,
         input_stream=io.BytesIO(b"x" * 60_000),
-        environ_overrides={"wsgi.input_terminated": True, "CONTENT_LENGTH": ""},
+        environ_overrides={"wsgi.input_terminated": True, "HTTP_TRANSFER_ENCODING": "chunked"},
     )
-    assert answer.status_code == 413
-    assert "0.05 MB" in answer.text
+    assert answer.status_code == 411
+
+
+def test_a_body_in_chunks_has_the_limit_on_the_real_server(client: FlaskClient):
+    served = create_server(client.application, host="127.0.0.1", port=0, threads=1)
+    thread = threading.Thread(target=served.run, daemon=True)
+    thread.start()
+    connection = http.client.HTTPConnection("127.0.0.1", served.effective_port, timeout=10)
+    try:
+        for size, status in ((40_000, 200), (60_000, 413)):
+            chunks = (b"x" * 10_000 for _ in range(size // 10_000))
+            connection.request("POST", "/raw", chunks, OWN, encode_chunked=True)
+            answer = connection.getresponse()
+            assert answer.status == status
+            answer.read()
+    finally:
+        connection.close()
+        served.trigger.pull_trigger(served.close)  # in the server's own thread
+        thread.join(5)
+        served.task_dispatcher.shutdown()
+    assert not thread.is_alive()
 
 
 def test_every_answer_has_the_headers(client: FlaskClient):
