@@ -22,6 +22,7 @@ LARGEST_DISC = 150
 SMALLEST_MODULE = 3
 SPACING = 1.0
 GAP = 0.9
+PACKING_STEPS = 260
 
 
 def layout(network: Network, seed: int = 1, progress: Progress = silent) -> FloatArray:
@@ -62,7 +63,7 @@ def _place(network: Network, seed: int, progress: Progress, depth: int) -> Float
         progress(position / len(modules), "drawing the map")
         part = network.subnetwork(group)
         inner.append(_place(part, seed, silent, depth + 1) if len(group) > LARGEST_DISC else _place_nodes(part, seed))
-    radii = np.array([_radius(points) + (0.2 if depth else GAP) for points in inner])
+    radii = np.array([_bulk(points) + (0.2 if depth else GAP) for points in inner])
     centres = _place_discs(network, modules, radii, seed)
     positions = np.zeros((network.node_count, 2))
     for group, points, centre in zip(modules.members, inner, centres, strict=True):
@@ -120,22 +121,19 @@ def _place_discs(network: Network, modules: Modules, radii: FloatArray, seed: in
 
 
 def _pack(centres: FloatArray, radii: FloatArray) -> FloatArray:
-    """Push overlapping discs apart and draw all of them gently inwards, until they lie side by side."""
-    centres = centres.copy()
+    """Draw discs gently together, pushing overlapping ones apart, until they lie side by side; wider than high."""
+    centres = centres * np.array([1.5, 1.1])
     touch = radii[:, None] + radii[None, :]
-    for step in range(240):
-        if step < 180:
-            centres *= 0.985
-        for _ in range(2):
-            offset = centres[:, None, :] - centres[None, :, :]
-            distance = np.sqrt((offset**2).sum(axis=2))
-            np.fill_diagonal(distance, np.inf)
-            overlap = np.maximum(touch - distance, 0.0)
-            if not overlap.any():
-                break
-            share = radii[None, :] / touch
-            push = (overlap * share / np.maximum(distance, 1e-6))[:, :, None] * offset
-            centres += 0.6 * push.sum(axis=1)
+    share = radii[None, :] / touch
+    for step in range(PACKING_STEPS):
+        if step < PACKING_STEPS - 40:
+            centres = centres * np.array([0.9935, 0.9905])
+        offset = centres[:, None, :] - centres[None, :, :]
+        distance = np.sqrt((offset**2).sum(axis=2))
+        np.fill_diagonal(distance, np.inf)
+        overlap = np.maximum(touch - distance, 0.0)
+        push = (overlap * share / np.maximum(distance, 1e-6))[:, :, None] * offset
+        centres = centres + 0.5 * push.sum(axis=1)
     return centres
 
 
@@ -175,6 +173,11 @@ def _ring(positions: FloatArray, groups: list[NDArray[np.intp]], radius: float) 
 
 def _radius(points: FloatArray) -> float:
     return 0.5 + (float(np.hypot(points[:, 0], points[:, 1]).max()) if len(points) else 0.0)
+
+
+def _bulk(points: FloatArray) -> float:
+    """Return the radius that holds all but a few outliers."""
+    return 0.5 + float(np.quantile(np.hypot(points[:, 0], points[:, 1]), 0.9))
 
 
 def _spiral(count: int) -> FloatArray:

@@ -10,6 +10,12 @@ import numpy as np
 
 from analysis.study import Study
 
+THEME = (
+    "themeQuartz.withParams({fontFamily: 'inherit', fontSize: 13, accentColor: 'var(--leaf)', "
+    "backgroundColor: 'var(--panel)', foregroundColor: 'var(--ink)', headerBackgroundColor: 'var(--panel)', "
+    "headerTextColor: 'var(--ink-soft)', borderColor: 'var(--line)', spacing: 5, wrapperBorderRadius: 6})"
+)
+
 
 def module_grid(study: Study, hues: Sequence[int]) -> Any:
     """Return the table of modules; a click opens the passport."""
@@ -18,7 +24,7 @@ def module_grid(study: Study, hues: Sequence[int]) -> Any:
     rows = table[["module", "name", "size", *figures]].replace({np.nan: None}).to_dict("records")
     for position, row in enumerate(rows):
         row["hue"] = int(hues[position]) if position < len(hues) else -1
-        row["index"] = position
+        row["id"] = str(position)
     columns = [
         _column("module", "module", 96, cellRenderer="ModuleCell", comparator={"function": "corymbByNumber"}),
         _column("name", "name", 110, filter="agTextColumnFilter"),
@@ -30,13 +36,15 @@ def module_grid(study: Study, hues: Sequence[int]) -> Any:
         _number("evidence", "evidence", 92),
         _number("q_value", "q-value", 86, 3),
     ]
-    return _grid("module-grid", columns, rows, "String(params.data.index)")
+    return _grid("module-grid", columns, rows, "params.data.id")
 
 
 def gene_grid(study: Study) -> Any:
     """Return the membership table; a click opens the passport."""
     names = ["gene", "module", "confidence", "second_module", "degree", "role"]
     rows = study.membership[names].replace({np.nan: None}).to_dict("records")
+    for row in rows:
+        row["id"] = f"{row['gene']}\t{row['module']}"
     columns = [
         _column("gene", "gene", 100, filter="agTextColumnFilter"),
         _column("module", "module", 90, filter="agTextColumnFilter", comparator={"function": "corymbByNumber"}),
@@ -45,7 +53,7 @@ def gene_grid(study: Study) -> Any:
         _number("degree", "degree", 82, 0),
         _column("role", "role", 140, filter="agTextColumnFilter"),
     ]
-    return _grid("gene-grid", columns, rows, "params.data.gene + '\\t' + params.data.module")
+    return _grid("gene-grid", columns, rows, "params.data.id")
 
 
 def _grid(grid_id: str, columns: list[dict[str, Any]], rows: list[dict[Hashable, Any]], row_id: str) -> Any:
@@ -54,7 +62,6 @@ def _grid(grid_id: str, columns: list[dict[str, Any]], rows: list[dict[Hashable,
         columnDefs=columns,
         rowData=rows,
         getRowId=row_id,
-        className="ag-theme-quartz",
         defaultColDef={"sortable": True, "resizable": True, "filter": "agNumberColumnFilter", "suppressMovable": True},
         dashGridOptions={
             "rowHeight": 30,
@@ -62,7 +69,7 @@ def _grid(grid_id: str, columns: list[dict[str, Any]], rows: list[dict[Hashable,
             "suppressCellFocus": False,
             "animateRows": False,
             "rowSelection": {"mode": "singleRow", "checkboxes": False, "enableClickSelection": True},
-            "theme": "legacy",
+            "theme": {"function": THEME},
         },
         style={"height": "300px", "width": "100%"},
     )

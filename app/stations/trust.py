@@ -58,7 +58,8 @@ def _strip(study: Study) -> list[Any]:
     head = ["module", "size", "stability", "", "copies", "support", "q-value"]
     hint = (
         "Stability is the mean overlap of a module with its best match; copies counts the noisy copies in which it "
-        "comes back; support is stability times evidence and orders modules by how likely they are real. It is no probability."
+        "comes back; support is stability times evidence: it orders modules by how likely they are real, and is no "
+        "probability."
     )
     return [
         heading("Modules"),
