@@ -5,12 +5,13 @@ An export is one function that takes a `Bundle` and returns bytes by file name, 
 
 from __future__ import annotations
 
-from analysis.handover.bundle import Bundle, Exporter, Source, report_from_plain
+from analysis.handover.bundle import Bundle, Exporter, Source, SweepBundle, report_from_plain
 from analysis.handover.gene_lists import gene_list_files
 from analysis.handover.graph_file import graphml_file
 from analysis.handover.recipe import Recipe, read_recipe, recipe_file
 from analysis.handover.report import report_file
 from analysis.handover.summary import summary_file
+from analysis.handover.sweep_files import sweep_bundle_files, sweep_sentences
 from analysis.handover.tables import membership_file, modules_file
 from analysis.handover.writer import as_zip, check_folder, write_folder
 from analysis.progress import Progress, silent
@@ -21,11 +22,14 @@ __all__ = [
     "Exporter",
     "Recipe",
     "Source",
+    "SweepBundle",
     "as_zip",
     "bundle_files",
     "check_folder",
     "read_recipe",
     "report_from_plain",
+    "sweep_bundle_files",
+    "sweep_sentences",
     "write_folder",
 ]
 

@@ -7,7 +7,9 @@ from dataclasses import dataclass, fields
 from typing import Any
 
 from analysis.intake.report import IntakeReport, Rejected, Role
+from analysis.network import Network
 from analysis.study import Study
+from analysis.trust.sweep import Sweep
 
 
 @dataclass(frozen=True)
@@ -46,6 +48,30 @@ class Bundle:
     study: Study
     report: IntakeReport | None = None
     source: Source | None = None
+
+
+@dataclass(frozen=True, eq=False)
+class SweepBundle:
+    """What `corymb sweep` hands over.
+
+    Attributes
+    ----------
+    network : Network
+    sweep : Sweep
+    report, source
+        As for `Bundle`.
+    weight : str or None
+        Column of the weights as it was asked for, `none` to leave them out, None where it was found.
+    min_weight : float or None
+        Edges below were left out.
+    """
+
+    network: Network
+    sweep: Sweep
+    report: IntakeReport | None = None
+    source: Source | None = None
+    weight: str | None = None
+    min_weight: float | None = None
 
 
 Exporter = Callable[[Bundle], dict[str, bytes]]

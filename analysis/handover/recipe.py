@@ -1,21 +1,24 @@
-"""`recipe.toml`: all that is needed to repeat a study, readable and editable."""
+"""`recipe.toml`: all that is needed to repeat a study or a sweep, readable and editable."""
 
 from __future__ import annotations
 
-import tomllib
 from collections.abc import Mapping
-from dataclasses import dataclass, fields
+from dataclasses import asdict, dataclass
 from typing import Any
 
 from analysis.errors import InputError, SettingError
-from analysis.handover.bundle import Bundle, Source
+from analysis.handover.bundle import Bundle, Source, SweepBundle
+from analysis.handover.recipe_parts import Kinds, parse_toml, refuse_unknown, table_of, texts_of, values_of
+from analysis.network import Network
 from analysis.study import SUGGEST, StudySettings
+from analysis.trust.sweep import SweepSettings
 from analysis.version import VERSION, versions
 
-WORK = "modules"
-TABLES = ("network", "settings", "names", "versions")
+MODULES, SWEEP = "modules", "sweep"
 
-_TYPES: dict[str, tuple[type, ...]] = {
+_NETWORK = ("file", "sha256", "fingerprint")
+_TAKEN: Kinds = {"weight": (str,), "min_weight": (float, int)}
+_STUDY: Kinds = {
     "method": (str,),
     "quality": (str,),
     "resolution": (float, int, str),
@@ -24,10 +27,19 @@ _TYPES: dict[str, tuple[type, ...]] = {
     "runs": (int,),
     "noise": (float, int),
     "nulls": (int,),
-    "weight": (str,),
-    "min_weight": (float, int),
+    **_TAKEN,
 }
-_WORDS = {str: "a text", int: "a whole number", float: "a number"}
+_SWEEP: Kinds = {
+    "quality": (str,),
+    "low": (float, int),
+    "high": (float, int),
+    "steps": (int,),
+    "runs": (int,),
+    "seed": (int,),
+    "noise": (float, int),
+    "noisy_runs": (int,),
+    **_TAKEN,
+}
 
 
 @dataclass(frozen=True)
@@ -39,43 +51,53 @@ class Recipe:
     source : Source
         The network's file; its path starts from the recipe's folder.
     fingerprint : str
-        Of the network that was studied.
-    settings : StudySettings
+        Of the network that was worked on.
+    settings : StudySettings or SweepSettings
+        The one for `corymb modules`, the other for `corymb sweep`.
+    weight : str or None
+        Column of the weights, `none` to leave them out, None to find it.
+    min_weight : float or None
+        Edges below are left out.
     versions : mapping of str to str
         Of corymb, Python and the libraries that made the tables.
     """
 
     source: Source
     fingerprint: str
-    settings: StudySettings
+    settings: StudySettings | SweepSettings
+    weight: str | None
+    min_weight: float | None
     versions: Mapping[str, str]
 
 
 def recipe_file(bundle: Bundle) -> dict[str, bytes]:
-    """Return `recipe.toml`; nothing where the network did not come from a file, since there is nothing to repeat."""
-    if bundle.source is None:
-        return {}
+    """Return `recipe.toml` of a study; nothing where the network did not come from a file: nothing can be repeated."""
     settings = bundle.study.settings.as_dict()
     names = settings.pop("names")
-    content = {
-        "work": WORK,
-        "network": {
-            "file": bundle.source.path,
-            "sha256": bundle.source.sha256,
-            "fingerprint": bundle.study.network.fingerprint,
-        },
-        "settings": {key: value for key, value in settings.items() if value is not None},
-        "names": dict(names),
-        "versions": versions(),
-    }
-    return {"recipe.toml": toml_bytes(content)}
+    return _render(MODULES, bundle.source, bundle.study.network, settings, {"names": dict(names)} if names else {})
 
 
-def toml_bytes(content: Mapping[str, Any]) -> bytes:
-    """Return TOML; floats read back exactly."""
+def sweep_recipe_file(bundle: SweepBundle) -> dict[str, bytes]:
+    """Return `recipe.toml` of a sweep; nothing where the network did not come from a file."""
+    settings = asdict(bundle.sweep.settings) | {"weight": bundle.weight, "min_weight": bundle.min_weight}
+    return _render(SWEEP, bundle.source, bundle.network, settings, {})
+
+
+def _render(
+    work: str, source: Source | None, network: Network, settings: Mapping[str, Any], more: Mapping[str, Any]
+) -> dict[str, bytes]:
     import tomli_w
 
-    return tomli_w.dumps(content).encode()
+    if source is None:
+        return {}
+    content = {
+        "work": work,
+        "network": {"file": source.path, "sha256": source.sha256, "fingerprint": network.fingerprint},
+        "settings": {key: value for key, value in settings.items() if value is not None},
+        **more,
+        "versions": versions(),
+    }
+    return {"recipe.toml": tomli_w.dumps(content).encode()}
 
 
 def read_recipe(text: str, where: str = "recipe.toml") -> Recipe:
@@ -94,91 +116,36 @@ def read_recipe(text: str, where: str = "recipe.toml") -> Recipe:
         Where it is no TOML, a part is missing or unknown, or a value is not of its kind.
     """
     content = parse_toml(text, where)
+    written = texts_of(content, "versions", where)
+    writer = written.get("corymb", "")
+    refuse_unknown(where, "the recipe", content, ("work", "network", "settings", "names", "versions"), writer)
+    network = texts_of(content, "network", where)
+    refuse_unknown(where, "[network]", network, _NETWORK, writer)
+    if missing := [key for key in _NETWORK if key not in network]:
+        raise InputError(where, f"[network] lacks {missing[0]!r}", "use the recipe as it was written")
+    path = network["file"]
+    source = Source(path.replace("\\", "/").rsplit("/", 1)[-1], network["sha256"], path)
     work = content.get("work")
-    if work != WORK:
-        raise InputError(where, f"work is {work!r}", f'this version ({VERSION}) repeats recipes with work = "{WORK}"')
-    refuse_unknown(where, "the recipe", content, ("work", *TABLES), content)
-    network = table_of(content, "network", where)
-    refuse_unknown(where, "[network]", network, ("file", "sha256", "fingerprint"), content)
-    file, sha256, fingerprint = (text_of(network, key, where) for key in ("file", "sha256", "fingerprint"))
-    source = Source(file.replace("\\", "/").rsplit("/", 1)[-1], sha256, file)
-    return Recipe(source, fingerprint, _settings(content, where), _versions(content, where))
-
-
-def parse_toml(text: str, where: str) -> dict[str, Any]:
-    """Return the content of a TOML text; `InputError` with what is wrong where it is none."""
+    if work not in (MODULES, SWEEP):
+        raise InputError(where, f"work is {work!r}", f"corymb {VERSION} repeats {MODULES!r} and {SWEEP!r}")
     try:
-        return tomllib.loads(text)
-    except (tomllib.TOMLDecodeError, RecursionError, ValueError) as error:
-        raise InputError(
-            where, f"this is not a recipe ({error})", "name the recipe.toml of an earlier run, as it was written"
-        ) from None
-
-
-def refuse_unknown(
-    where: str, part: str, content: Mapping[str, Any], known: tuple[str, ...], whole: Mapping[str, Any]
-) -> None:
-    """Raise `InputError` for a key that this version does not know, since leaving it out could change the result."""
-    unknown = [key for key in content if key not in known]
-    if not unknown:
-        return
-    written = whole.get("versions", {})
-    writer = written.get("corymb") if isinstance(written, dict) else None
-    newer = isinstance(writer, str) and writer != VERSION
-    remedy = f"it was written by corymb {writer}: use that version" if newer else "check its spelling, or remove it"
-    raise InputError(where, f"{part} holds {unknown[0]!r}, which corymb {VERSION} does not know", remedy)
-
-
-def table_of(content: Mapping[str, Any], name: str, where: str) -> dict[str, Any]:
-    """Return one table of a recipe; `InputError` where it is missing."""
-    table = content.get(name)
-    if not isinstance(table, dict):
-        raise InputError(where, f"the part [{name}] is missing", "use the recipe as it was written")
-    return table
-
-
-def text_of(table: Mapping[str, Any], key: str, where: str) -> str:
-    """Return one text of a recipe's table; `InputError` where it is missing, empty or something else."""
-    value = table.get(key)
-    if not isinstance(value, str) or not value:
-        raise InputError(where, f"{key!r} is missing or not a text", "use the recipe as it was written")
-    return value
-
-
-def _settings(content: Mapping[str, Any], where: str) -> StudySettings:
-    given = table_of(content, "settings", where)
-    refuse_unknown(where, "[settings]", given, tuple(_TYPES), content)
-    needed = {each.name for each in fields(StudySettings)} - {"weight", "min_weight", "names"}
-    missing = sorted(needed - set(given))
-    if missing:
-        raise InputError(where, f"[settings] lacks {missing[0]!r}", "use the recipe as it was written")
-    for key, value in given.items():
-        check_kind(where, key, value, _TYPES[key])
-    values: dict[str, Any] = {
-        key: float(value) if float in _TYPES[key] and not isinstance(value, str) else value
-        for key, value in given.items()
-    }
-    if isinstance(values["resolution"], str) and values["resolution"] != SUGGEST:
-        raise InputError(where, f"resolution is {values['resolution']!r}", f'give a number, or "{SUGGEST}"')
-    try:
-        return StudySettings(**values, names=_names(content, where))
+        settings, taken = (_study if work == MODULES else _sweep)(content, where, writer)
     except SettingError as error:
         raise InputError(where, str(error), "mend it in the recipe") from None
+    return Recipe(source, network["fingerprint"], settings, taken.get("weight"), taken.get("min_weight"), written)
 
 
-def check_kind(where: str, key: str, value: Any, kinds: tuple[type, ...]) -> None:
-    """Raise `InputError` where a value of the recipe is not of one of its kinds."""
-    if isinstance(value, bool) or not isinstance(value, kinds):
-        raise InputError(where, f"{key} is {value!r}", f"give {_WORDS[kinds[0]]}")
+def _study(content: Mapping[str, Any], where: str, writer: str) -> tuple[StudySettings, dict[str, Any]]:
+    values = values_of(content, where, _STUDY, _TAKEN, writer)
+    if isinstance(values["resolution"], str) and values["resolution"] != SUGGEST:
+        raise InputError(where, f"resolution is {values['resolution']!r}", f'give a number, or "{SUGGEST}"')
+    names = texts_of(content, "names", where) if "names" in content else {}
+    return StudySettings(**values, names=names), values
 
 
-def _names(content: Mapping[str, Any], where: str) -> dict[str, str]:
-    names = content.get("names", {})
-    if not isinstance(names, dict) or not all(isinstance(name, str) for name in names.values()):
-        raise InputError(where, "[names] is not a list of names", 'give one a line, as in M2 = "bilayer repair"')
-    return names
-
-
-def _versions(content: Mapping[str, Any], where: str) -> dict[str, str]:
-    written = table_of(content, "versions", where)
-    return {str(key): str(value) for key, value in written.items()}
+def _sweep(content: Mapping[str, Any], where: str, writer: str) -> tuple[SweepSettings, dict[str, Any]]:
+    if "names" in content:
+        refuse_unknown(where, "the recipe of a sweep", table_of(content, "names", where), (), writer)
+    values = values_of(content, where, _SWEEP, (*_TAKEN, "low", "high"), writer)
+    taken = {key: values.pop(key) for key in _TAKEN if key in values}
+    return SweepSettings(**values), taken

@@ -6,7 +6,9 @@ import json
 import math
 from typing import Any
 
-from analysis.handover.bundle import Bundle
+from analysis.handover.bundle import Bundle, Source
+from analysis.intake.report import IntakeReport
+from analysis.network import Network
 from analysis.study import NullDraws
 from analysis.version import versions
 
@@ -25,7 +27,7 @@ def summarise(bundle: Bundle) -> dict[str, Any]:
     """Return the summary as plain values; figures that were not computed are None."""
     study = bundle.study
     return {
-        "network": _network(bundle),
+        "network": describe_network(study.network, bundle.report, bundle.source),
         "method": study.settings.method,
         "settings": study.settings.as_dict(),
         "quality": study.modules.quality,
@@ -42,8 +44,8 @@ def summarise(bundle: Bundle) -> dict[str, Any]:
     }
 
 
-def _network(bundle: Bundle) -> dict[str, Any]:
-    network, report, source = bundle.study.network, bundle.report, bundle.source
+def describe_network(network: Network, report: IntakeReport | None, source: Source | None) -> dict[str, Any]:
+    """Return the figures of a network and of how it was read."""
     found: dict[str, Any] = {
         "nodes": network.node_count,
         "edges": network.edge_count,

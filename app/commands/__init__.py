@@ -1,0 +1,12 @@
+"""The subcommands of `corymb`, one file each; heavy libraries load when a command runs, not when it is listed."""
+
+from __future__ import annotations
+
+from types import ModuleType
+
+from app.commands import find_modules, inspect_network, open_dashboard, rerun_recipe, sweep_resolutions
+
+COMMANDS: dict[str, ModuleType] = {
+    module.NAME: module for module in (open_dashboard, inspect_network, find_modules, sweep_resolutions, rerun_recipe)
+}
+"""Each has `NAME`, `HELP`, `add_arguments(parser)` and `run(arguments, terminal) -> int`."""
