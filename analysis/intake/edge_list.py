@@ -15,7 +15,7 @@ from analysis.intake.interactions import Interactions
 from analysis.intake.lines import COMMENT_MARKS, Block, blocks
 from analysis.intake.rows import RowCollector
 from analysis.intake.separator import find_separator
-from analysis.intake.splitting import split
+from analysis.intake.splitting import QUOTES_OPEN, split
 from analysis.intake.table import Table
 from analysis.intake.unpacking import TEXT_WANTED
 from analysis.intake.wording import shown
@@ -143,22 +143,20 @@ def _find_layout(text: str, source: str) -> Layout:
     lines = block.lines[: SAMPLE + 1]
     separator = find_separator(lines)
     if separator is None:
-        raise InputError(
-            source, f"one column ({shown(lines[0].strip())}) and no separator", ONE_COLUMN, block.numbers[0]
-        )
+        raise _one_column(source, lines[0], block.numbers[0])
     cells = split(lines, separator)
-    if not cells.rows:
-        raise InputError(
-            source,
-            "quotes are opened and not closed",
-            "expected quotes in pairs around a cell",
-            block.numbers[0],
-        )
     first, sample = cells.rows[0], cells.rows[1:]
     header = find_header(first, sample)
     if header is not None:
         return Layout(separator, header, block.numbers[cells.places[0]], sample, first)
     return Layout(separator, _header_in_comment(block.last_comment, first, separator), None, cells.rows, first)
+
+
+def _one_column(source: str, line: str, number: int) -> InputError:
+    """Return the error for a text that no separator parts."""
+    if split([line], "tab").broken:
+        return InputError(source, QUOTES_OPEN, "expected quotes in pairs, each pair around one cell", number)
+    return InputError(source, f"one column ({shown(line.strip())}) and no separator", ONE_COLUMN, number)
 
 
 def _first_rows(text: str, source: str) -> Block:

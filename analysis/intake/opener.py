@@ -58,7 +58,7 @@ def _content(where: str, path: Path, limit: int) -> bytes:
     """Read in pieces, so that a pipe without end stops at the limit."""
     taken = bytearray()
     with path.open("rb") as handle:
-        while piece := handle.read(CHUNK):
+        while piece := handle.read1(CHUNK):
             taken += piece
             if len(taken) > limit:
                 raise too_large(where, limit)

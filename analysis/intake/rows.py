@@ -62,7 +62,7 @@ class RowCollector:
 
     def knows(self, labels: tuple[str, ...]) -> bool:
         """Tell whether one of the labels was met in a row."""
-        return any(label in self._codes for label in labels)
+        return any(label and label in self._codes for label in labels)
 
     def take(self, block: Block, cells: Cells, header_line: int | None) -> None:
         """Take in a block of lines and its cells, leaving out the header.
