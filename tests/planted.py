@@ -79,6 +79,26 @@ def planted_network(
     return Planted(network, Modules.from_labels(placed), placed, float(crossing.mean()))
 
 
+def benchmark_network(mixing: float, *, nodes: int = 500, seed: int = 3) -> Planted:
+    """LFR benchmark by networkx (Lancichinetti, Fortunato & Radicchi 2008), mean degree 15, modules of 10 to 50.
+
+    It realises more mixing than asked: 0.16, 0.32, 0.47, 0.60 for 0.1, 0.2, 0.3, 0.4 (measured on seed 3).
+    """
+    import networkx as nx
+
+    graph = nx.LFR_benchmark_graph(
+        nodes, 3, 1.5, mixing, average_degree=15, max_degree=40, min_community=10, max_community=50, seed=seed
+    )
+    graph.remove_edges_from(list(nx.selfloop_edges(graph)))
+    network = from_networkx(graph)
+    communities = sorted({tuple(sorted(graph.nodes[node]["community"])) for node in graph})
+    labels = np.empty(nodes, np.int64)
+    for number, community in enumerate(communities):
+        labels[list(community)] = number
+    crossing = labels[network.sources] != labels[network.targets]
+    return Planted(network, Modules.from_labels(labels), labels, float(crossing.mean()))
+
+
 def ring_of_cliques(cliques: int = 30, size: int = 5) -> Network:
     """Complete graphs in a ring, one edge from each to the next (Fortunato & Barthélemy 2007)."""
     ends = [(f"c{c:02d}-{i}", f"c{c:02d}-{j}") for c in range(cliques) for i in range(size) for j in range(i + 1, size)]

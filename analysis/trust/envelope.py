@@ -31,21 +31,29 @@ class Domain:
     modules: int
 
 
-def quality_line(network: Network, labels: NDArray[np.int32], quality: str) -> tuple[float, float]:
-    """Return `(A, B)` of a partition, whose quality at resolution γ is ``A − γB``.
+def quality_lines(network: Network, table: NDArray[np.int32], quality: str) -> FloatArray:
+    """Return `A` and `B` of partitions, shape (partitions, 2); their quality at resolution γ is ``A − γB``.
 
     Modularity: ``A = Σ_c W_c / W``, ``B = Σ_c (K_c / 2W)²``. Constant Potts model: ``A = Σ_c W_c`` in units of the
     weights' 95 % quantile, ``B = Σ_c n_c (n_c − 1) / 2``. See `analysis.methods.leiden.Leiden`.
+
+    Parameters
+    ----------
+    table : int32 array, shape (partitions, nodes)
+        Non-negative labels.
     """
-    inside = float(network.edge_weights[labels[network.sources] == labels[network.targets]].sum())
-    if quality == "cpm":
-        sizes = np.bincount(labels).astype(np.float64)
-        return inside / weight_unit(network), float((sizes * (sizes - 1) / 2).sum())
     total = float(network.edge_weights.sum())
-    if total == 0:
-        return 0.0, 0.0
-    share = np.bincount(labels, network.strength) / (2 * total)
-    return inside / total, float((share**2).sum())
+    unit = weight_unit(network) if quality == "cpm" and total else max(total, 1.0)
+    lines = np.zeros((len(table), 2))
+    for row, labels in enumerate(table):
+        inside = labels[network.sources] == labels[network.targets]
+        lines[row, 0] = network.edge_weights[inside].sum() / unit
+        if quality == "cpm":
+            sizes = np.bincount(labels).astype(np.float64)
+            lines[row, 1] = (sizes * (sizes - 1) / 2).sum()
+        elif total:
+            lines[row, 1] = ((np.bincount(labels, network.strength) / (2 * total)) ** 2).sum()
+    return lines
 
 
 def upper_envelope(

@@ -14,7 +14,7 @@ from analysis.modules import modularity
 from analysis.network import FloatArray, IntArray, Network
 from analysis.progress import Progress
 from analysis.trust.chains import LabelTable, canonical
-from analysis.trust.envelope import Domain, quality_line, upper_envelope
+from analysis.trust.envelope import Domain, quality_lines, upper_envelope
 
 UNKNOWN = float("nan")
 
@@ -105,7 +105,7 @@ class PartitionPool:
         self._tables[position] = table
         if position >= self.runs:
             return []
-        lines = np.array([quality_line(self.network, labels, self.quality) for labels in table])
+        lines = quality_lines(self.network, table, self.quality)
         self._lines[position] = lines
         values = lines[:, 0] - self.grid[:, None] * lines[:, 1]
         better = np.flatnonzero(values.max(axis=1) > self._leading)

@@ -14,7 +14,7 @@ from analysis.methods import Leiden
 from analysis.modules import Modules
 from analysis.network import Network
 from analysis.trust.chains import ChainTask, canonical
-from analysis.trust.envelope import quality_line, upper_envelope
+from analysis.trust.envelope import quality_lines, upper_envelope
 from analysis.trust.matching import best_matches, by_product, unbroken_range
 from analysis.trust.noise import Noise
 from analysis.trust.sweep import (
@@ -26,7 +26,7 @@ from analysis.trust.sweep import (
     run_sweep,
     stability_over_sweep,
 )
-from tests.planted import from_networkx, planted_network, ring_of_cliques
+from tests.planted import benchmark_network, from_networkx, planted_network, ring_of_cliques
 
 
 def same(first: Sweep, second: Sweep) -> bool:
@@ -108,6 +108,16 @@ def test_the_partition_at_one_reaches_the_published_modularity(graph, weight, be
     assert point.quality == pytest.approx(point.modularity)
 
 
+def test_what_is_suggested_is_nearer_to_the_truth_than_resolution_one():
+    for mixing in (0.1, 0.2, 0.3, 0.4):
+        planted = benchmark_network(mixing)
+        for quality in ("modularity", "cpm"):
+            sweep = run_sweep(planted.network, SweepSettings(quality, runs=3), InProcess())
+            shown = sweep.points[sweep.suggestion.position].labels
+            one = Leiden().labels(planted.network, seed=1)
+            assert adjusted_mutual_information(shown, planted.labels) > adjusted_mutual_information(one, planted.labels)
+
+
 # The envelope (CHAMP: Weir et al. 2017)
 
 
@@ -133,7 +143,7 @@ def test_the_envelope_is_the_highest_line_everywhere(seed):
 def test_the_line_of_a_partition_is_its_quality(quality, weight):
     network = from_networkx(nx.les_miserables_graph(), weight=weight)
     labels = Leiden(quality, 0.3).labels(network, seed=1)
-    inside, penalty = quality_line(network, labels, quality)
+    ((inside, penalty),) = quality_lines(network, labels[None], quality)
     for resolution in (0.05, 1.0, 7.0):
         expected = Leiden(quality, resolution).score(network, labels)
         assert inside - resolution * penalty == pytest.approx(expected)
