@@ -1,0 +1,1 @@
+"""The tests of corymb; `python -m tests` runs them all."""
