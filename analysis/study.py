@@ -74,6 +74,10 @@ class StudySettings:
         Column that held the weights; `none` to ignore them; None where it was found by itself.
     min_weight : float or None
         Edges below are left out.
+    show : str
+        `best` for the run of best quality, `consensus` for the consensus of all runs; for Leiden and Louvain.
+    keep : str
+        For the harvest: `supported` to cut where chance begins, `all` for all that hold.
     names : mapping
         Names given to modules, `{"M2": "bilayer repair"}`.
     """
@@ -88,6 +92,8 @@ class StudySettings:
     nulls: int = 100
     weight: str | None = None
     min_weight: float | None = None
+    show: str = "best"
+    keep: str = "supported"
     names: Mapping[str, str] = field(default_factory=dict)
 
     def __post_init__(self) -> None:
@@ -95,6 +101,9 @@ class StudySettings:
             raise SettingError("--runs must be at least 1, --nulls and --seed at least 0")
         if not 0 <= self.noise < 1:
             raise SettingError(f"--noise is {self.noise}; give the share of edges to leave out, from 0 to below 1")
+
+        if self.show not in {"best", "consensus"} or self.keep not in {"supported", "all"}:
+            raise SettingError("--show takes best or consensus, --keep takes supported or all")
 
     def as_dict(self) -> dict[str, Any]:
         """Return the settings as plain values, for the summary, the recipe and the workspace."""
@@ -154,6 +163,8 @@ class Study:
         One sentence, where the resolution was suggested; else empty.
     sentences : tuple of str
         The verdict on the whole, plainest first.
+    chance : str
+        The verdict against null networks in one sentence; empty where none was run.
     copies : int
         Number of noisy copies; 0 where none was asked for.
     returned : int32 array, shape (modules,), or None
@@ -173,6 +184,7 @@ class Study:
     nulls: NullDraws | None = None
     suggestion: str = ""
     sentences: tuple[str, ...] = ()
+    chance: str = ""
     copies: int = 0
     returned: NDArray[np.int32] | None = None
 

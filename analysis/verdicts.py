@@ -22,8 +22,15 @@ CLUSTERED_CAUTION = (
 
 def partition_sentences(study: Study) -> list[str]:
     """Return the verdict on the whole clustering, plainest first; what chance would give comes before all else."""
-    sentences = [*_chance(study), _count(study), *_agreement(study), *_left_out(study), *_limit(study)]
-    return sentences if not study.suggestion else [study.suggestion, *sentences]
+    suggestion = [study.suggestion] if study.suggestion else []
+    return [
+        *_chance(study),
+        _count(study),
+        *suggestion,
+        *_agreement(study),
+        *_left_out(study),
+        *_limit(study),
+    ]
 
 
 def module_sentence(study: Study, module: int) -> str:
@@ -72,9 +79,7 @@ def _holds(row: object) -> str:
 def _returns(study: Study, module: int) -> str:
     if study.returned is None:
         return ""
-    share = f"{study.settings.noise:.0%}".replace("%", " %")
-    found = f"comes back in {study.returned[module]} of {study.copies} copies of the network"
-    return f"{found} with {share} of the edges left out"
+    return f"comes back in {study.returned[module]} of {study.copies} copies of the network {_noise_words(study)}"
 
 
 def _denser(row: object) -> str:
@@ -90,27 +95,15 @@ def _join(parts: list[str]) -> str:
 
 
 def _chance(study: Study) -> list[str]:
-    if study.nulls is None:
-        return []
-    nulls, count = study.nulls, len(study.nulls.draws)
-    mean = float(nulls.draws.mean())
-    if nulls.p_value > LEVEL:
-        return [
-            f"This network is no more modular than random networks with the same degrees (modularity "
-            f"{nulls.observed:.3f}, by chance {mean:.3f}, p = {nulls.p_value:.2g}): its modules are what chance gives."
-        ]
-    return [
-        f"The network is more modular than {count} random networks with the same degrees (modularity "
-        f"{nulls.observed:.3f}, by chance {mean:.3f}, p = {nulls.p_value:.2g}). That speaks for the whole, "
-        "not yet for each module."
-    ]
+    return [study.chance] if study.chance else []
 
 
 def _count(study: Study) -> str:
     sizes = study.modules.sizes
     three = int((sizes >= 3).sum())
-    kind = "communities, which may share genes" if study.modules.is_cover else "modules"
-    return f"{len(sizes)} {kind}, {three} of three genes or more; shown is {study.shown}."
+    kind = "modules, which may share genes" if study.modules.is_cover else "modules"
+    kind = "module" if len(sizes) == 1 else kind
+    return f"{len(sizes)} {kind}, {three} of three genes or more ({study.shown})."
 
 
 def _agreement(study: Study) -> list[str]:
@@ -121,9 +114,15 @@ def _agreement(study: Study) -> list[str]:
             "how well the method settles, not whether it is right."
         )
     if not math.isnan(study.noise_ami):
-        share = f"{study.settings.noise:.0%}".replace("%", " %")
-        sentences.append(f"Copies with {share} of the edges left out agree with it at {study.noise_ami:.2f}.")
+        sentences.append(f"Copies {_noise_words(study)} agree with it at {study.noise_ami:.2f}.")
     return sentences
+
+
+def _noise_words(study: Study) -> str:
+    if study.settings.method == "harvest":
+        return "with 20 % of the edges left out or rewired"
+    share = f"{study.settings.noise:.0%}".replace("%", " %")
+    return f"with {share} of the edges left out"
 
 
 def _left_out(study: Study) -> list[str]:
