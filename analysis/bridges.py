@@ -65,6 +65,8 @@ def classify(within_module_z: NDArray[Any], participation: NDArray[Any]) -> NDAr
 def _within_module_z(adjacency: Any, modules: Modules) -> FloatArray:
     nodes, owners = modules.memberships
     count = len(modules)
+    if count == 0:
+        return np.zeros(0)
     inside = np.asarray((adjacency @ membership_matrix(modules))[nodes, owners], np.float64).ravel()
     size = np.maximum(modules.sizes, 1)
     mean = np.bincount(owners, inside, count) / size

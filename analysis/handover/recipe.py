@@ -73,8 +73,8 @@ class Recipe:
 def recipe_file(bundle: Bundle) -> dict[str, bytes]:
     """Return `recipe.toml` of a study; nothing where the network did not come from a file: nothing can be repeated."""
     settings = bundle.study.settings.as_dict()
-    names = settings.pop("names")
-    return _render(MODULES, bundle.source, bundle.study.network, settings, {"names": dict(names)} if names else {})
+    names = {module: name for module, name in settings.pop("names").items() if name}
+    return _render(MODULES, bundle.source, bundle.study.network, settings, {"names": names} if names else {})
 
 
 def sweep_recipe_file(bundle: SweepBundle) -> dict[str, bytes]:
