@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import argparse
-import os
 import subprocess
 import sys
 import time
@@ -57,7 +56,7 @@ def run_all(todo: Sequence[Step]) -> int:
         if failed:
             lines.append(f"  {step.name}: not run")
             continue
-        print(f"\n== {step.name}: {' '.join(step.arguments[:3])}", flush=True)
+        print(f"\n== {step.name}", flush=True)
         start = time.monotonic()
         failed = "" if step.run() else step.name
         lines.append(f"  {step.name}: {'FAILED' if failed else 'passed'} in {time.monotonic() - start:.0f} s")
@@ -74,7 +73,6 @@ def main(argv: Sequence[str] | None = None) -> int:
     if not quick and bring_chromium() is None:
         print(MISSING, file=sys.stderr)
         return 1
-    os.environ.setdefault("PYTHONUNBUFFERED", "1")
     return run_all(steps(quick=quick))
 
 
