@@ -279,6 +279,19 @@ def evidence_per_member(
     return evidence
 
 
+def expected_density(network: Network, members: NDArray[Any]) -> float:
+    """Return the inside density that the members' degrees alone would give, edges counting one each.
+
+    ``D (D − 1) / (2 (2m − 1))`` edges for summed degree `D`, the mean of the configuration model (Newman 2010,
+    Networks, section 13.2), over all pairs; NaN for a single node.
+    """
+    total = int(network.degree[members].sum())
+    pairs = len(members) * (len(members) - 1) / 2
+    if not pairs or not network.edge_count:
+        return float("nan")
+    return float(min(total * (total - 1) / (2 * (2 * network.edge_count - 1)) / pairs, 1.0))
+
+
 def module_table(network: Network, modules: Modules) -> pd.DataFrame:
     """Return the figures of each module as a table, one row a module, `module` being `M1, M2, …`."""
     import pandas as pd

@@ -10,6 +10,7 @@ import re
 import threading
 from collections import OrderedDict
 from collections.abc import Callable, Mapping
+from dataclasses import replace
 from pathlib import Path
 from typing import Any
 
@@ -58,7 +59,9 @@ class Desk:
 
     def open_path(self, path: Path) -> str:
         """Read a file from the disk into the workspace; return the network's fingerprint."""
-        return self._take(read_network(path), path.read_bytes(), path.name)
+        reading = read_network(path)
+        report = replace(reading.report, source=path.name)
+        return self._take(Reading(reading.network, report), path.read_bytes(), path.name)
 
     def open_bytes(self, content: bytes, file_name: str, weight: str | None = None) -> str:
         """Read an upload into the workspace; return the network's fingerprint."""
@@ -72,7 +75,7 @@ class Desk:
         named = Network(
             network.names, network.sources, network.targets, network.weights, SAMPLE_LABEL, network.provenance
         )
-        return self._take(Reading(named, reading.report), path.read_bytes(), SAMPLE)
+        return self._take(Reading(named, replace(reading.report, source=SAMPLE)), path.read_bytes(), SAMPLE)
 
     def first_network(self) -> str:
         """Return the network that was at hand last, else the sample network."""
@@ -99,6 +102,10 @@ class Desk:
     def network(self, fingerprint: str) -> Network:
         """Return a network of the workspace."""
         return self.workspace.network(fingerprint)
+
+    def is_small(self, fingerprint: str | None) -> bool:
+        """Whether null networks are so quick that they need not be asked for."""
+        return fingerprint is not None and self.network(fingerprint).edge_count <= SMALL_EDGES
 
     # drawing
 
@@ -200,11 +207,13 @@ class Desk:
         def work(progress: Progress) -> bool:
             compute = self.jobs.quick if _is_quick(network, settings) else self.jobs.long
             study = run_study(network, settings, compute=compute, progress=progress)
-            self.workspace.save_study(key, study)
+            # the trail first: a study without its line in the trail would never get one
             self.workspace.save_clustering(TrailEntry.of(fingerprint, settings.as_dict(), _figures(study)))
+            self.workspace.save_study(key, study)
             return True
 
-        return key, self.jobs.start("study", key, work)
+        request = {"fingerprint": fingerprint, "settings": settings.as_dict()}
+        return key, self.jobs.start("study", key, work, request)
 
     def study(self, study_id: str | None) -> Study | None:
         """Return a finished study with the names given to its modules, None where it is not ready."""
@@ -218,13 +227,6 @@ class Desk:
         study = self.workspace.study(study_id)
         drawing = self.drawing(study.network.fingerprint) if study is not None else None
         return None if study is None or drawing is None else pack_colours(drawing[1], study.modules)
-
-    def hue(self, study: Study, module: int) -> int:
-        """Return the hue of one module, a position in the palette."""
-        from app.map.colours import follow
-
-        drawing = self.drawing(study.network.fingerprint)
-        return 0 if drawing is None else int(follow(drawing[1], study.modules)[module])
 
     # handing over
 
@@ -275,6 +277,7 @@ INPUT_FOLDER = "input"
 ZIPS_AT_HAND = 4
 PREVIEW_EDGES = 60_000
 QUICK_WORK = 100_000
+SMALL_EDGES = 20_000
 
 
 def _is_quick(network: Network, settings: StudySettings) -> bool:

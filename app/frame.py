@@ -13,7 +13,16 @@ from app.ruler import QUESTIONS
 from app.stations import START, STATIONS
 
 TICK_MILLISECONDS = 250
-WANTED = {"method": "leiden", "quality": "modularity", "resolution": 1.0, "k": 4, "seed": 1, "nulls": 0}
+WANTED = {
+    "method": "leiden",
+    "quality": "modularity",
+    "resolution": 1.0,
+    "k": 4,
+    "seed": 1,
+    "nulls": 0,
+    "show": "best",
+    "keep": "supported",
+}
 
 
 def layout(brand_mark: str) -> html.Div:
@@ -107,6 +116,7 @@ def _map_area() -> html.Main:
         style={"width": "100%", "height": "100%"},
         minZoom=0.05,
         maxZoom=6,
+        wheelSensitivity=None,
     )
     legend = html.Div(
         [

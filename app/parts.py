@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from collections.abc import Sequence
 from typing import Any
+from urllib.parse import quote
 
 from dash import html
 
@@ -84,6 +85,15 @@ def table(head: Sequence[str], rows: Sequence[Sequence[Any]], *, numeric: Sequen
         ],
         className="table",
         **{"aria-label": name},
+    )
+
+
+def figure(svg: str, words: str) -> html.Figure:
+    """Return a figure drawn as SVG, with its one-sentence reading below."""
+    alone = svg.replace("<svg ", '<svg xmlns="http://www.w3.org/2000/svg" font-family="sans-serif" font-size="12" ', 1)
+    return html.Figure(
+        [html.Img(src=f"data:image/svg+xml,{quote(alone)}", alt=words), html.Figcaption(words, className="hint")],
+        className="figure",
     )
 
 

@@ -8,6 +8,7 @@ from typing import Any
 import numpy as np
 from dash import dcc, html
 
+from analysis.modules import expected_density
 from analysis.network import Network
 from analysis.study import Study
 from analysis.verdicts import DEGREE_CAUTION, STRUCTURE_CAUTION, is_firm, module_sentence
@@ -69,12 +70,13 @@ def gene_passport(view: View, node: int) -> Pane:
 
 def _module_evidence(study: Study, module: int) -> html.Table:
     row = study.module_table.iloc[module]
-    expected = _expected_density(study, module)
+    expected = expected_density(study.network, study.modules.members[module])
     firm = is_firm(study, module)
     lines: list[list[Any]] = [
         ["genes", "", f"{row['size']:,}", ""],
         ["interactions inside / leaving", "", f"{row['internal_edges']:,} / {row['cut_edges']:,}", ""],
-        ["stability", bar(float(row["stability"]), doubt=not firm), number(float(row["stability"])), ""],
+        *_returned(study, module, firm=firm),
+        ["stability over all resolutions", bar(float(row["stability"])), number(float(row["stability"])), ""],
         [
             "inside density",
             bar(float(row["internal_density"])),
@@ -92,13 +94,13 @@ def _module_evidence(study: Study, module: int) -> html.Table:
     return table(["evidence", "", "here", "from degrees"], lines, numeric=[2, 3], name="Evidence for the module")
 
 
-def _expected_density(study: Study, module: int) -> float:
-    """Inside density that the members' degrees alone would give: ``D (D − 1) / (2 (2m − 1))`` edges over all pairs."""
-    group = study.modules.members[module]
-    total = int(study.network.degree[group].sum())
-    pairs = len(group) * (len(group) - 1) / 2
-    edges = study.network.edge_count
-    return min(total * (total - 1) / (2 * (2 * edges - 1)) / pairs, 1.0) if pairs else math.nan
+def _returned(study: Study, module: int, *, firm: bool) -> list[list[Any]]:
+    if study.returned is None:
+        return []
+    share = float(study.returned[module]) / study.copies
+    return [
+        ["comes back in noisy copies", bar(share, doubt=not firm), f"{study.returned[module]} of {study.copies}", ""]
+    ]
 
 
 def _members(study: Study, module: int) -> list[Any]:

@@ -41,6 +41,22 @@ class View:
         """Return the network at hand."""
         return self.desk.network(self.fingerprint) if self.fingerprint else None
 
+    def module_of(self, pick: Mapping[str, Any]) -> int:
+        """Return the module that a pick means in the clustering shown; −1 where it is gone.
+
+        A pick remembers the best-connected gene of its module, so that the module under discussion is still the one
+        meant after a re-clustering has numbered the modules anew.
+        """
+        if self.study is None:
+            return -1
+        index, leader = int(pick.get("index", -1)), pick.get("leader")
+        modules = self.study.modules
+        if leader is None:
+            return index if index < len(modules) else -1
+        if 0 <= index < len(modules) and leader in modules.members[index]:
+            return index
+        return int(modules.labels[int(leader)]) if int(leader) < modules.node_count else -1
+
     def hues(self) -> Sequence[int]:
         """Return the hue of every module of the study shown."""
         from app.map.colours import follow

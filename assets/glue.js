@@ -17,6 +17,9 @@
     ruler: null, // last data of the ruler
     wanted: null,
     cache: new Map(), // address → decoded colours, newest last
+    degrees: new Uint32Array(0),
+    painted: null, // decoded colours on the map now
+    pick: null,
     dragging: false,
     turn: 0,
   };
@@ -50,6 +53,7 @@
   }
 
   function paint(decoded, names) {
+    state.painted = decoded;
     const numbers = [];
     for (let module = 0; module < decoded.modules; module += 1) {
       const number = `M${module + 1}`;
@@ -61,6 +65,32 @@
       numbers,
       grey: Uint8Array.from(decoded.sizes, (size) => (size < state.sizeCut ? 1 : 0)),
     });
+    if (state.pick && state.pick.kind === "module") light();
+  }
+
+  /** The module that a pick means on the map now: it is known by a gene, whatever its number has become. */
+  function moduleOf(pick) {
+    if (pick.leader === undefined || !state.painted) return pick.index;
+    const label = state.painted.labels[pick.leader];
+    return label === none ? null : label;
+  }
+
+  /** The best-connected gene of a module on the map now. */
+  function leaderOf(module) {
+    let leader = -1;
+    state.painted.labels.forEach((label, node) => {
+      if (label === module && (leader < 0 || state.degrees[node] > state.degrees[leader])) leader = node;
+    });
+    return leader;
+  }
+
+  function light() {
+    const pick = state.pick;
+    const kind = pick ? pick.kind : "nothing";
+    const module = kind === "module" ? moduleOf(pick) : null;
+    const genes = kind === "gene" ? [pick.index] : kind === "list" ? pick.genes : [];
+    window.corymb.map.select({ module, genes });
+    return { module, genes };
   }
 
   function describe(decoded, resolution) {
@@ -111,7 +141,12 @@
       state.shown = null;
       state.shownId = null;
       state.ruler = null;
-      state.loaded = Promise.resolve(window.corymb.map.load({ url: order.url, names: null, label: order.label }));
+      state.loaded = Promise.all([
+        window.corymb.map.load({ url: order.url, names: null, label: order.label }),
+        fetch(`${order.url}/degrees`)
+          .then((answer) => answer.arrayBuffer())
+          .then((buffer) => (state.degrees = new Uint32Array(buffer))),
+      ]);
       return noUpdate();
     },
 
@@ -166,13 +201,22 @@
 
     async select(pick) {
       await state.loaded;
-      const kind = pick ? pick.kind : "nothing";
-      const module = kind === "module" ? pick.index : null;
-      const genes = kind === "gene" ? [pick.index] : kind === "list" ? pick.genes : [];
-      window.corymb.map.select({ module, genes });
+      state.pick = pick;
+      const { module, genes } = light();
       if (pick && pick.focus && (genes.length || module !== null)) {
         window.corymb.map.focus(module !== null ? { module } : { genes });
       }
+      return noUpdate();
+    },
+
+    fit(elements, kind) {
+      if (kind !== "close-up" || !elements || !elements.length) return noUpdate();
+      window.setTimeout(() => {
+        const cy = document.getElementById("closeup")?._cyreg?.cy;
+        if (!cy) return;
+        cy.resize();
+        cy.fit(undefined, 40);
+      }, 60);
       return noUpdate();
     },
 
@@ -199,6 +243,7 @@
   };
 
   async function confidence(url, on) {
+    text("legend-text", `colour: ${on ? "how surely a gene stays, from ochre to green" : "module"} · size: degree · grey: modules under `);
     if (!on) {
       window.corymb.map.confidence(null, false);
       return;
@@ -292,7 +337,10 @@
 
   window.corymb = window.corymb || {};
   function join() {
-    window.corymb.map.onPick = (picked) => setProps("from-map", { data: { ...picked, moment: Date.now() } });
+    window.corymb.map.onPick = (picked) => {
+      const leader = picked.kind === "module" && state.painted ? { leader: leaderOf(picked.index) } : {};
+      setProps("from-map", { data: { ...picked, ...leader, moment: Date.now() } });
+    };
     window.corymb.ruler.onMove = (index) => {
       state.dragging = true;
       preview(index);

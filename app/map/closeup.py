@@ -12,6 +12,7 @@ from analysis.network import FloatArray, Network
 from app.map.colours import GREY, PALETTE
 
 NODES_SHOWN = 400
+NEIGHBOURS_SHOWN = 120
 EDGES_SHOWN = 2500
 SPREAD = 34.0
 
@@ -61,9 +62,7 @@ def gene_closeup(
     """Return the elements of a gene with its partners, and one sentence on what is shown."""
     core = np.array([node])
     chosen, sentence = _with_neighbours(network, core, f"{network.names[node]} with its partners")
-    return _elements(
-        network, modules, hues, positions, chosen=chosen, inside=set(chosen.tolist()), centre=node
-    ), sentence
+    return _elements(network, modules, hues, positions, chosen=chosen, inside={node}, centre=node), sentence
 
 
 def _with_neighbours(network: Network, core: NDArray[Any], what: str) -> tuple[NDArray[Any], str]:
@@ -73,7 +72,7 @@ def _with_neighbours(network: Network, core: NDArray[Any], what: str) -> tuple[N
     links = links + np.bincount(network.sources[inside[network.targets]], minlength=network.node_count)
     around = np.flatnonzero((links > 0) & ~inside)
     around = around[np.argsort(-links[around], kind="stable")]
-    room = max(NODES_SHOWN - len(core), 0)
+    room = max(min(NODES_SHOWN - len(core), max(len(core), NEIGHBOURS_SHOWN)), 0)
     shown = around[:room]
     kept = core if len(core) <= NODES_SHOWN else core[np.argsort(-network.degree[core], kind="stable")[:NODES_SHOWN]]
     dropped = len(around) - len(shown) + len(core) - len(kept)
@@ -92,7 +91,7 @@ def _elements(
     centre: int | None,
 ) -> list[dict[str, Any]]:
     labels = modules.labels
-    place = positions[chosen] * SPREAD
+    place = _drawn_in(positions[chosen], np.array([node in inside for node in chosen.tolist()])) * SPREAD
     nodes = []
     for node, (x, y) in zip(chosen.tolist(), place.tolist(), strict=True):
         label = int(labels[node])
@@ -102,6 +101,18 @@ def _elements(
         data = {"id": str(node), "label": network.names[node], "colour": colour, "size": size}
         nodes.append({"data": data, "position": {"x": x, "y": y}, "classes": classes})
     return nodes + _edges(network, chosen, inside)
+
+
+def _drawn_in(points: FloatArray, inside: NDArray[np.bool_]) -> FloatArray:
+    """Draw what lies outside nearer to the middle, so that the inside stays large; directions are kept."""
+    core = points[inside] if inside.any() else points
+    middle = np.median(core, axis=0)
+    reach = float(np.quantile(np.hypot(*(core - middle).T), 0.9)) + 1.0
+    offset = points - middle
+    distance = np.hypot(*offset.T)
+    wanted = np.where(distance > reach, reach * (1.1 + 0.35 * np.log(np.maximum(distance, reach) / reach)), distance)
+    drawn: FloatArray = offset * (wanted / np.maximum(distance, 1e-9))[:, None]
+    return drawn
 
 
 def _edges(network: Network, chosen: NDArray[Any], inside: set[int]) -> list[dict[str, Any]]:

@@ -7,7 +7,7 @@ from typing import Any
 
 from dash import dcc, html
 
-from analysis.methods import METHODS
+from analysis.evidence import HARVEST
 from analysis.study import Study
 from analysis.verdicts import STRUCTURE_CAUTION
 from app.grids import gene_grid, module_grid
@@ -21,6 +21,13 @@ METHOD_LABELS = {
     "leiden": "Leiden",
     "louvain": "Louvain",
     "clique-percolation": "clique percolation",
+    HARVEST: "harvest",
+}
+METHOD_SENTENCES = {
+    "leiden": "Every gene in one module, at the resolution of the ruler.",
+    "louvain": "The older method, for comparison with earlier work; Leiden's modules are never torn inside.",
+    "clique-percolation": "Modules may share genes; genes in no group of k are left out. It has no resolution but k.",
+    HARVEST: "Modules each at its own resolution from a whole sweep, best supported first; genes in none are left out.",
 }
 TRAIL_SHOWN = 30
 
@@ -65,7 +72,7 @@ def _brief(study: Study) -> list[str]:
 
 def _settings(view: View) -> list[Any]:
     wanted = view.wanted
-    options = [{"label": METHOD_LABELS[key], "value": key} for key in METHODS]
+    options = [{"label": label, "value": key} for key, label in METHOD_LABELS.items()]
     controls = [
         field(
             "method",
@@ -77,7 +84,25 @@ def _settings(view: View) -> list[Any]:
         hint = "a community is a chain of groups of k genes, all joined, each sharing all but one with the next"
         control = dcc.Input(value=wanted["k"], type="number", min=2, max=100, step=1, id="k", debounce=True)
         controls.insert(1, field("k", control, hint))
-    return [heading("How they are found"), html.Div(controls, className="fields")]
+    if wanted["method"] == HARVEST:
+        options = [
+            {"label": "only the well supported", "value": "supported"},
+            {"label": "all that hold", "value": "all"},
+        ]
+        keep = dcc.Dropdown(options, wanted.get("keep", "supported"), id="keep", clearable=False, searchable=False)
+        controls.insert(1, field("keep", keep))
+    if wanted["method"] in {"leiden", "louvain"}:
+        options = [
+            {"label": "the best run", "value": "best"},
+            {"label": "the consensus of all runs", "value": "consensus"},
+        ]
+        show = dcc.Dropdown(options, wanted.get("show", "best"), id="show", clearable=False, searchable=False)
+        controls.insert(1, field("shown", show))
+    return [
+        heading("How they are found"),
+        html.Div(controls, className="fields"),
+        html.P(METHOD_SENTENCES[wanted["method"]], className="hint"),
+    ]
 
 
 def _trail(view: View) -> list[Any]:

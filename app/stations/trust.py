@@ -6,9 +6,10 @@ from typing import Any
 
 from dash import html
 
+from analysis.handover.report.charts import null_chart
 from analysis.study import Study
 from analysis.verdicts import CLUSTERED_CAUTION, is_firm
-from app.parts import bar, button, heading, link, notice, number, sentence, sentences, table
+from app.parts import bar, button, figure, heading, link, notice, number, sentence, sentences, table
 from app.view import Pane, View
 
 KEY = "trust"
@@ -29,8 +30,21 @@ def render(view: View) -> Pane:
     study = view.study
     if study is None:
         return Pane(TITLE, [sentence("There is no clustering yet.", first=True)], [])
-    body: list[Any] = [*sentences(study.sentences), *_strip(study), *_doubtful(study), notice(CLUSTERED_CAUTION)]
+    body: list[Any] = [
+        *sentences(study.sentences),
+        *_chance_figure(study),
+        *_strip(study),
+        *_doubtful(study),
+        notice(CLUSTERED_CAUTION),
+    ]
     return Pane(TITLE, body, [] if study.nulls is not None else [chance_button()])
+
+
+def _chance_figure(study: Study) -> list[Any]:
+    if study.nulls is None:
+        return []
+    words = f"Modularity of {len(study.nulls.draws)} random networks with the same degrees, clustered likewise"
+    return [heading("Against chance"), figure(null_chart(study.nulls), f"{words}; the line is this network.")]
 
 
 def _strip(study: Study) -> list[Any]:
@@ -46,26 +60,30 @@ def _strip(study: Study) -> list[Any]:
             [
                 link(title, {"type": "pick-module", "index": module}),
                 f"{row['size']}",
-                bar(float(row["stability"]), doubt=not is_firm(study, module)),
-                number(float(row["stability"])),
+                bar(_share(study, module), doubt=not is_firm(study, module)),
                 returned,
+                number(float(row["stability"])),
                 number(float(row["support"])),
                 number(float(row["q_value"]), 3),
             ]
         )
     if not rows:
         return []
-    head = ["module", "size", "stability", "", "copies", "support", "q-value"]
+    head = ["module", "size", "comes back", "", "stability", "support", "q-value"]
     hint = (
-        "Stability is the mean overlap of a module with its best match; copies counts the noisy copies in which it "
-        "comes back; support is stability times evidence: it orders modules by how likely they are real, and is no "
-        "probability."
+        "Comes back: in how many noisy copies more than half of the module is found together again. Stability: its "
+        "mean overlap with the best match over copies and over all resolutions. Support: stability times evidence; "
+        "it orders modules by how likely they are real, and is no probability."
     )
     return [
         heading("Modules"),
         html.P(hint, className="hint"),
         table(head, rows, numeric=[1, 3, 4, 5, 6], name="Modules by stability"),
     ]
+
+
+def _share(study: Study, module: int) -> float:
+    return float("nan") if study.returned is None else float(study.returned[module]) / study.copies
 
 
 def _doubtful(study: Study) -> list[Any]:

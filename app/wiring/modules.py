@@ -7,9 +7,14 @@ from typing import Any
 from dash import ALL, Dash, Input, Output, State, ctx, no_update
 
 from analysis.errors import CorymbError
+from analysis.evidence import HARVEST
 from analysis.study import StudySettings
 from app.desk import Desk
 from app.wiring.triggers import pressed
+
+
+NULLS = 100
+HARVEST_NULLS = 3
 
 
 def wire(app: Dash, desk: Desk) -> None:
@@ -54,6 +59,24 @@ def wire(app: Dash, desk: Desk) -> None:
 
     @app.callback(
         Output("wanted", "data", allow_duplicate=True),
+        Input("show", "value"),
+        State("wanted", "data"),
+        prevent_initial_call=True,
+    )
+    def change_show(show: str | None, wanted: dict[str, Any]) -> Any:
+        return no_update if show is None or show == wanted.get("show") else {**wanted, "show": show}
+
+    @app.callback(
+        Output("wanted", "data", allow_duplicate=True),
+        Input("keep", "value"),
+        State("wanted", "data"),
+        prevent_initial_call=True,
+    )
+    def change_keep(keep: str | None, wanted: dict[str, Any]) -> Any:
+        return no_update if keep is None or keep == wanted.get("keep") else {**wanted, "keep": keep}
+
+    @app.callback(
+        Output("wanted", "data", allow_duplicate=True),
         Input("k", "value"),
         State("wanted", "data"),
         prevent_initial_call=True,
@@ -78,11 +101,15 @@ def wire(app: Dash, desk: Desk) -> None:
     @app.callback(
         Output("wanted", "data", allow_duplicate=True),
         Input({"type": "compare-with-chance", "index": ALL}, "n_clicks"),
+        Input("station", "data"),
         State("wanted", "data"),
         prevent_initial_call=True,
     )
-    def compare_with_chance(_clicks: Any, wanted: dict[str, Any]) -> Any:
-        return {**wanted, "nulls": 100} if pressed("compare-with-chance") else no_update
+    def compare_with_chance(_clicks: Any, station: str, wanted: dict[str, Any]) -> Any:
+        if not wanted or wanted["nulls"]:
+            return no_update
+        arrived = ctx.triggered_id == "station" and station == "trust" and desk.is_small(wanted.get("network"))
+        return {**wanted, "nulls": NULLS} if arrived or pressed("compare-with-chance") else no_update
 
     @app.callback(
         Output("names-version", "data"),
@@ -114,5 +141,7 @@ def settings_of(wanted: dict[str, Any]) -> StudySettings:
         resolution=wanted["resolution"],
         k=wanted["k"],
         seed=wanted["seed"],
-        nulls=wanted["nulls"],
+        nulls=HARVEST_NULLS if wanted["method"] == HARVEST else wanted["nulls"],
+        show=wanted.get("show", "best"),
+        keep=wanted.get("keep", "supported"),
     )

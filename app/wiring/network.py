@@ -4,10 +4,11 @@ from __future__ import annotations
 
 from typing import Any
 
-from dash import ALL, Dash, Input, Output, State, ctx, no_update
+from dash import ALL, Dash, Input, Output, State, ctx, html, no_update
 
 from app.desk import Desk
 from app.frame import WANTED
+from app.parts import link
 from app.ruler import QUESTIONS
 from app.wiring.triggers import pressed
 
@@ -55,6 +56,16 @@ def wire(app: Dash, desk: Desk) -> None:
         fresh = {**WANTED, **(desk.last_wanted(fingerprint) or {}), "network": fingerprint}
         return order, network.label, counts, (no_update if same else fresh), (no_update if same else None)
 
+    @app.callback(Output("state-suggestion", "children"), Input("ruler-data", "data"), prevent_initial_call=True)
+    def suggest(ruler: Any) -> Any:
+        if not ruler or ruler["suggestion"] is None:
+            return ""
+        value = f"{ruler['suggestion']:.2g}"
+        return [
+            "suggested: ",
+            html.Span(link(value, {"type": "resolution", "value": ruler["suggestion"]}), title=ruler["reason"]),
+        ]
+
     @app.callback(
         Output("wanted", "data", allow_duplicate=True),
         Input({"type": "question", "quality": ALL}, "n_clicks"),
@@ -66,11 +77,17 @@ def wire(app: Dash, desk: Desk) -> None:
     def ask(_clicks: Any, rest: Any, _suggested: Any, wanted: dict[str, Any]) -> Any:
         if pressed("question"):
             quality = ctx.triggered_id["quality"]
-            return {**wanted, "method": "leiden", "quality": quality, "resolution": QUESTIONS[quality].start}
+            return {
+                **wanted,
+                "method": "leiden",
+                "quality": quality,
+                "resolution": QUESTIONS[quality].start,
+                "nulls": 0,
+            }
         if pressed("resolution"):
-            return {**wanted, **_at_resolution(wanted), "resolution": float(ctx.triggered_id["value"])}
+            return {**wanted, **_at_resolution(wanted), "resolution": float(ctx.triggered_id["value"]), "nulls": 0}
         if ctx.triggered_id == "from-ruler" and rest:
-            return {**wanted, **_at_resolution(wanted), "resolution": float(rest["value"])}
+            return {**wanted, **_at_resolution(wanted), "resolution": float(rest["value"]), "nulls": 0}
         return no_update
 
 

@@ -72,7 +72,7 @@ def _view(desk: Desk, fingerprint: str | None, shown: Any, wanted: Any, message:
 def _picked(view: View, pick: Any) -> Pane | None:
     kind = (pick or {}).get("kind")
     if kind == "module":
-        return module_passport(view, int(pick["index"]))
+        return module_passport(view, view.module_of(pick))
     if kind == "gene":
         return gene_passport(view, int(pick["index"]))
     if kind == "list":

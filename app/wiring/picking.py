@@ -20,13 +20,15 @@ def wire(app: Dash, desk: Desk) -> None:
         Input({"type": "pick-module", "index": ALL}, "n_clicks"),
         Input({"type": "pick-gene", "gene": ALL}, "n_clicks"),
         State("at-hand", "data"),
+        State("shown", "data"),
         prevent_initial_call=True,
     )
-    def pick(picked: Any, _modules: Any, _genes: Any, fingerprint: str | None) -> Any:
+    def pick(picked: Any, _modules: Any, _genes: Any, fingerprint: str | None, shown: Any) -> Any:
         if ctx.triggered_id == "from-map" and picked:
-            return None if picked["kind"] == "nothing" else {"kind": picked["kind"], "index": picked["index"]}
+            known = ("kind", "index", "leader")
+            return None if picked["kind"] == "nothing" else {key: picked[key] for key in known if key in picked}
         if pressed("pick-module"):
-            return {"kind": "module", "index": ctx.triggered_id["index"]}
+            return module_pick(desk, shown, int(ctx.triggered_id["index"]))
         if pressed("pick-gene") and fingerprint:
             return {"kind": "gene", "index": desk.network(fingerprint).index[ctx.triggered_id["gene"]]}
         return no_update
@@ -34,24 +36,25 @@ def wire(app: Dash, desk: Desk) -> None:
     @app.callback(
         Output("pick", "data", allow_duplicate=True),
         Input("module-grid", "cellClicked"),
+        State("shown", "data"),
         prevent_initial_call=True,
     )
-    def pick_row(cell: Any) -> Any:
-        return {"kind": "module", "index": int(cell["rowId"])} if cell else no_update
+    def pick_row(cell: Any, shown: Any) -> Any:
+        return module_pick(desk, shown, int(cell["rowId"])) if cell else no_update
 
     @app.callback(
         Output("pick", "data", allow_duplicate=True),
         Input("gene-grid", "cellClicked"),
         State("at-hand", "data"),
+        State("shown", "data"),
         prevent_initial_call=True,
     )
-    def pick_gene_row(cell: Any, fingerprint: str | None) -> Any:
+    def pick_gene_row(cell: Any, fingerprint: str | None, shown: Any) -> Any:
         if not cell or not fingerprint:
             return no_update
-        gene, module = cell["rowId"].rsplit("\t", 1)
+        gene = cell["rowId"].rsplit("\t", 1)[0]
         if cell["colId"] in {"module", "second_module"} and isinstance(cell["value"], str):
-            module = cell["value"]
-            return {"kind": "module", "index": int(module[1:]) - 1}
+            return module_pick(desk, shown, int(cell["value"][1:]) - 1)
         return {"kind": "gene", "index": desk.network(fingerprint).index[gene]}
 
     @app.callback(
@@ -67,7 +70,7 @@ def wire(app: Dash, desk: Desk) -> None:
         study = desk.study(shown["study"]) if shown else None
         found = find(text, desk.network(fingerprint), study)
         if found.module is not None:
-            return {"kind": "module", "index": found.module, "focus": True}
+            return {**module_pick(desk, shown, found.module), "focus": True}
         if len(found.genes) == 1 and not found.missing:
             return {"kind": "gene", "index": found.genes[0], "focus": True}
         return {
@@ -77,3 +80,13 @@ def wire(app: Dash, desk: Desk) -> None:
             "similar": list(found.similar),
             "focus": True,
         }
+
+
+def module_pick(desk: Desk, shown: Any, module: int) -> dict[str, Any]:
+    """Return a pick of a module of the clustering shown, with the gene that it is known by after a re-clustering."""
+    study = desk.study(shown["study"]) if shown else None
+    pick: dict[str, Any] = {"kind": "module", "index": module}
+    if study is not None and 0 <= module < len(study.modules):
+        group = study.modules.members[module]
+        pick["leader"] = int(group[study.network.degree[group].argmax()])
+    return pick
