@@ -10,7 +10,7 @@ from pathlib import Path
 
 from analysis.compute import Compute, open_compute
 from analysis.errors import InputError
-from analysis.evidence import NOISY_COPIES, run_study
+from analysis.evidence import NOISY_COPIES, SUPPORT_COPIES, SUPPORT_STEPS, run_study
 from analysis.handover import (
     Bundle,
     Source,
@@ -92,7 +92,7 @@ def study_into(
 ) -> Study:
     """Run a study and write everything into the folder `out`, whole or not at all."""
     check_folder(out)
-    runs = settings.runs + settings.nulls + NOISY_COPIES
+    runs = settings.runs + settings.nulls + NOISY_COPIES + SUPPORT_STEPS * SUPPORT_COPIES
     with _computing(address, given.network, runs) as compute:
         study = run_study(given.network, settings, compute=compute, progress=portion(progress, 0.0, 0.9))
     bundle = Bundle(study, given.report, given.source(out))

@@ -22,6 +22,7 @@
     pick: null,
     dragging: false,
     turn: 0,
+    previews: 0, // counts previews asked for; an older one that comes late is not painted
   };
   const noUpdate = () => window.dash_clientside.no_update;
   const setProps = (id, props) => window.dash_clientside.set_props(id, props);
@@ -125,8 +126,9 @@
 
   async function preview(index) {
     await state.loaded;
+    const turn = (state.previews += 1);
     const decoded = await colours(rulerUrl(index));
-    if (!decoded) return;
+    if (!decoded || turn !== state.previews) return;
     paint(decoded, {});
     describe(decoded, state.ruler.grid[index]);
   }
@@ -160,6 +162,7 @@
       const url = `/data/study/${shown.study}`;
       const [decoded, names] = await Promise.all([colours(url), fetch(`${url}/names`).then((answer) => answer.json())]);
       if (!decoded || state.network !== order.url) return noUpdate();
+      state.previews += 1;
       state.shown = decoded;
       state.shownId = shown.study;
       state.names = names;
@@ -171,7 +174,7 @@
       return noUpdate();
     },
 
-    ruler(data, wanted) {
+    ruler(data, wanted, shown) {
       state.wanted = wanted;
       const known = data && wanted && data.network === wanted.network && data.quality === wanted.quality;
       const questions = document.querySelectorAll("#question-switch button");
@@ -194,8 +197,11 @@
       });
       if (!before || before.version !== data.version || before.network !== data.network || before.quality !== data.quality) {
         fetchAhead();
-        if (!state.shown) preview(nearest(data.grid, wanted.resolution));
       }
+      const optimised = wanted.method === "leiden" || wanted.method === "louvain";
+      const answered =
+        shown && ["network", "method", "quality", "resolution"].every((key) => shown[key] === wanted[key]);
+      if (optimised && !answered && !state.dragging) preview(nearest(data.grid, wanted.resolution));
       return noUpdate();
     },
 
@@ -243,7 +249,7 @@
   };
 
   async function confidence(url, on) {
-    text("legend-text", `colour: ${on ? "how surely a gene stays, from ochre to green" : "module"} · size: degree · grey: modules under `);
+    text("legend-text", `colour: ${on ? "how surely it stays" : "module"} · size: degree · grey: modules under `);
     if (!on) {
       window.corymb.map.confidence(null, false);
       return;

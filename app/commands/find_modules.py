@@ -23,6 +23,8 @@ BELONGS_TO = {
     "k": ("clique-percolation",),
     "resolution": ("leiden", "louvain"),
     "quality": ("leiden", "louvain"),
+    "show": ("leiden", "louvain"),
+    "keep": ("harvest",),
 }
 """Methods to which an option belongs."""
 
@@ -44,6 +46,10 @@ def add_arguments(parser: ArgumentParser) -> None:
     parser.add_argument("--runs", metavar="R", type=whole, help="runs with different seeds; default: 50")
     parser.add_argument("--noise", metavar="F", type=finite, help="share of edges left out in copies; default: 0.1")
     parser.add_argument("--nulls", metavar="N", type=whole, help="random networks with the same degrees; default: 100")
+    parser.add_argument("--show", metavar="best|consensus", help="the best run or the consensus; default: best")
+    parser.add_argument(
+        "--keep", metavar="supported|all", help="for harvest: down to where chance begins, or all; default: supported"
+    )
     add_weights(parser)
     add_compute(parser)
     add_quiet(parser)
@@ -74,13 +80,27 @@ def settings_from(arguments: Namespace) -> StudySettings:
     SettingError
         Where options contradict one another or are out of their range; found before the network is read.
     """
-    from analysis.evidence import method_of
+    from analysis.evidence import HARVEST, method_of
     from analysis.study import SUGGEST, StudySettings
 
-    keys = ("method", "quality", "resolution", "k", "seed", "runs", "noise", "nulls", "weight", "min_weight")
+    keys = (
+        "method",
+        "quality",
+        "resolution",
+        "k",
+        "seed",
+        "runs",
+        "noise",
+        "nulls",
+        "show",
+        "keep",
+        "weight",
+        "min_weight",
+    )
     given: dict[str, Any] = {key: getattr(arguments, key) for key in keys if getattr(arguments, key) is not None}
     method = given.get("method", "leiden")
-    method_of(StudySettings(method=method))  # says which methods there are where this is none
+    if method != HARVEST:
+        method_of(StudySettings(method=method))  # says which methods there are where this is none
     for option, methods in BELONGS_TO.items():
         if option in given and method not in methods:
             raise SettingError(
@@ -92,7 +112,8 @@ def settings_from(arguments: Namespace) -> StudySettings:
     if given.get("weight") == "none" and "min_weight" in given:
         raise SettingError("--min-weight needs weights, and --weight none leaves them out; give one of the two")
     settings = StudySettings(**given)
-    method_of(settings.at(resolution=1.0) if settings.resolution == SUGGEST else settings)
+    if method != HARVEST:
+        method_of(settings.at(resolution=1.0) if settings.resolution == SUGGEST else settings)
     return settings
 
 

@@ -12,7 +12,6 @@ from analysis.study import StudySettings
 from app.desk import Desk
 from app.wiring.triggers import pressed
 
-
 NULLS = 100
 HARVEST_NULLS = 3
 
@@ -38,7 +37,8 @@ def wire(app: Dash, desk: Desk) -> None:
         except CorymbError as error:
             return no_update, str(error)
         desk.keep_wanted(fingerprint, wanted)
-        return {"study": study_id, "job": job, "network": fingerprint, "quality": wanted["quality"]}, ""
+        asked = {key: wanted[key] for key in ("method", "quality", "resolution")}
+        return {"study": study_id, "job": job, "network": fingerprint, **asked}, ""
 
     @app.callback(
         Output("wanted", "data", allow_duplicate=True),

@@ -99,7 +99,7 @@ def _newly_shown(desk: Desk, pending: Any, shown: Any) -> Any:
         return no_update
     if desk.study(pending["study"]) is None:
         return no_update
-    return {"study": pending["study"], "network": pending["network"]}
+    return {key: pending[key] for key in ("study", "network", "method", "quality", "resolution")}
 
 
 def _newer_ruler(desk: Desk, pending: Any, seen: Any) -> Any:
