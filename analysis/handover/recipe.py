@@ -27,6 +27,8 @@ _STUDY: Kinds = {
     "runs": (int,),
     "noise": (float, int),
     "nulls": (int,),
+    "show": (str,),
+    "keep": (str,),
     **_TAKEN,
 }
 _SWEEP: Kinds = {
@@ -73,6 +75,8 @@ class Recipe:
 def recipe_file(bundle: Bundle) -> dict[str, bytes]:
     """Return `recipe.toml` of a study; nothing where the network did not come from a file: nothing can be repeated."""
     settings = bundle.study.settings.as_dict()
+    if bundle.study.suggestion:
+        settings["resolution"] = SUGGEST  # the study holds what was suggested; to repeat it, it must be asked for again
     names = {module: name for module, name in settings.pop("names").items() if name}
     return _render(MODULES, bundle.source, bundle.study.network, settings, {"names": names} if names else {})
 

@@ -36,6 +36,10 @@ REFERENCES = {
     "detection. Physical Review E 84, 016114.",
     "resolution": "Reichardt J, Bornholdt S (2006). Statistical mechanics of community detection. Physical Review E "
     "74, 016110.",
+    "rates": "Storey JD, Tibshirani R (2003). Statistical significance for genomewide studies. Proceedings of the "
+    "National Academy of Sciences 100, 9440–9445.",
+    "robustness": "Karrer B, Levina E, Newman MEJ (2008). Robustness of community structure in networks. Physical "
+    "Review E 77, 046119.",
     "roles": "Guimerà R, Amaral LAN (2005). Functional cartography of complex metabolic networks. Nature 433, 895–900.",
     "significance": "Traag VA, Krings G, Van Dooren P (2013). Significant scales in community structure. Scientific "
     "Reports 3, 2930.",

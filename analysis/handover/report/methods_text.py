@@ -2,9 +2,12 @@
 
 from __future__ import annotations
 
+from analysis.evidence import HARVEST, SUPPORT_COPIES, SUPPORT_STEPS
 from analysis.handover.bundle import Bundle
-from analysis.handover.report.wording import count, plain
-from analysis.study import SUGGEST, Study
+from analysis.handover.report.wording import count, percent, plain
+from analysis.harvest_study import harvest_settings
+from analysis.study import Study
+from analysis.trust.support import CopySettings
 from analysis.version import versions
 
 ALGORITHMS = {"leiden": "the Leiden algorithm [leiden]", "louvain": "the Louvain algorithm [louvain]"}
@@ -35,24 +38,39 @@ def _network(bundle: Bundle) -> list[str]:
 
 def _modules(study: Study) -> list[str]:
     settings = study.settings
-    if settings.method == "clique-percolation":
+    if settings.method == HARVEST:
+        return _harvest(study)
+    if settings.method not in ALGORITHMS:
         return [
             f"Modules are the k-clique communities [cliques] for k = {settings.k}, found exactly; their quality is the "
             "extended modularity [cover]."
         ]
-    if settings.method not in ALGORITHMS:
-        return []
-    found = f"Modules were found by {ALGORITHMS[settings.method]}, optimising {_quality(study)}."
-    seeds = (
-        f"It was run {count(settings.runs, 'time')} with seeds derived from {settings.seed}; shown is {study.shown}."
-    )
-    sentences = [found, seeds]
-    if settings.resolution == SUGGEST:
-        sentences.append("The resolution was taken from a sweep over resolutions, with the ranges of [champ].")
-    if "consensus" in study.shown:
+    sentences = [
+        f"Modules were found by {ALGORITHMS[settings.method]}, optimising {_quality(study)}.",
+        f"It was run {count(settings.runs, 'time')} with seeds derived from {settings.seed}; shown is {study.shown}.",
+    ]
+    if study.suggestion:
+        sentences.append("The resolution was taken from the steadiest stretch of a sweep, its ranges after [champ].")
+    if settings.show == "consensus":
         sentences.append("The consensus follows [consensus].")
     if settings.runs > 1:
         sentences.append("Agreement between partitions is their adjusted mutual information [ami].")
+    return sentences
+
+
+def _harvest(study: Study) -> list[str]:
+    chosen = harvest_settings(study.settings)
+    sentences = [
+        f"Modules were taken each at its own resolution from a sweep of the constant Potts model [potts] by the Leiden "
+        f"algorithm [leiden] over {chosen.steps} resolutions, in the order of their support, with at most a quarter of "
+        f"the genes of each taken before; seeds were derived from {study.settings.seed}."
+    ]
+    if chosen.cut:
+        sentences.append(
+            f"They were kept down to the support at which {count(chosen.nulls, 'random network')} with the same "
+            f"degrees [swaps], harvested likewise, gave {chosen.level:g} times as many modules (a false discovery rate by "
+            "permutation [rates])."
+        )
     return sentences
 
 
@@ -65,19 +83,29 @@ def _quality(study: Study) -> str:
 
 
 def _noise(study: Study) -> list[str]:
-    known = study.membership["confidence"].notna().any()
-    if not known:
+    """Say what stability and confidence are; see `analysis.evidence.run_study`."""
+    if not study.membership["confidence"].notna().any():
         return []
-    if study.copies:
-        left_out = f"{study.settings.noise:.0%}".replace("%", " %")
-        ensemble = (
-            f"{study.copies} copies of the network from which {left_out} of the edges had been left out at random"
-        )
-    else:
-        ensemble = f"the {study.settings.runs} runs with different seeds"
+    own = "the share of them in which it stayed in the module that matched its own best"
+    if not study.copies:
+        return [
+            f"A module's stability is its mean best-match Jaccard index over the {study.settings.runs} runs with "
+            f"different seeds [stability]; a gene's confidence is {own}."
+        ]
+    harvested = study.settings.method == HARVEST
+    steps = harvest_settings(study.settings).steps if harvested else SUPPORT_STEPS
+    copies = harvest_settings(study.settings).copies if harvested else SUPPORT_COPIES
+    stability = (
+        f"A module's stability is its mean best-match Jaccard index [stability] over {steps} resolutions and {copies} "
+        f"copies of the network with {percent(CopySettings().noise)} of the edges left out or rewired [robustness]."
+    )
+    if harvested:
+        return [stability, f"A gene's confidence, over the same copies at the module's own resolution, is {own}."]
+    left_out = percent(study.settings.noise)
     return [
-        f"A module's stability is its mean best-match Jaccard index over {ensemble} [stability]; a gene's confidence "
-        "is the share of them in which it stayed in the module that matched its own best."
+        stability,
+        f"A gene's confidence comes from {study.copies} copies with {left_out} of the edges left out at random: it is "
+        f"{own}.",
     ]
 
 
@@ -87,7 +115,7 @@ def _figures(study: Study) -> list[str]:
         "Evidence per member is the divergence of a module's density from that expected by the configuration model "
         "(after [significance]), in nats; support is evidence times stability.",
     ]
-    if study.settings.quality == "modularity":
+    if study.settings.quality == "modularity" and study.settings.method in ALGORITHMS:
         sentences.append("Modules with fewer than √(2m) edges inside are marked, m being all edges [limit].")
     return sentences
 
@@ -103,8 +131,8 @@ def _nulls(study: Study) -> list[str]:
     ]
     if study.module_table["p_value"].notna().any():
         sentences.append(
-            "Modules were compared with modules of like size found in these networks; q-values control the false "
-            "discovery rate over all modules [bh]."
+            "The evidence of each module was compared with that of modules of like size found in these networks; "
+            "q-values control the false discovery rate over all modules [bh]."
         )
     return sentences
 

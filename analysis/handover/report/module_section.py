@@ -28,6 +28,8 @@ _HEADS = {
     "p_value": "p",
     "q_value": "q",
 }
+_HARVESTED = "share of chance"
+"""What the q-value of a harvested module is: of the modules with its support or more, the share that chance gives."""
 _WHOLE = ("size", "internal_edges", "cut_edges")
 _CHANCES = ("p_value", "q_value")
 
@@ -40,7 +42,8 @@ def module_tables(study: Study) -> Markup:
     limited = bool(table["below_resolution_limit"].any())
     records = table.to_dict("records")
     rows = [_row(position, record, shown, ranges, limited) for position, record in enumerate(records)]
-    head = _head(shown, ranges, limited)
+    heads = _HEADS | ({"q_value": _HARVESTED} if study.settings.method == "harvest" else {})
+    head = _head([heads[column] for column in shown], ranges, limited)
     parts = [_wide(head, rows[:ROWS_OPEN])]
     if rest := rows[ROWS_OPEN:]:
         summary = f"The other {count(len(rest), 'module')}, M{ROWS_OPEN + 1} to M{len(rows)}"
@@ -92,12 +95,12 @@ def gene_lists(study: Study) -> Markup:
     return tag("details", summary, note, lists)
 
 
-def _head(shown: list[str], ranges: bool, limited: bool) -> Markup:
+def _head(heads: list[str], ranges: bool, limited: bool) -> Markup:
     cells = [tag("th", "module", scope="col")]
-    for column in shown:
-        if column == "stability" and ranges:
+    for head in heads:
+        if head == "stability" and ranges:
             cells.append(tag("th", "holds at resolution", class_="n", scope="col"))
-        cells.append(tag("th", _HEADS[column], class_=None if column == "stability" else "n", scope="col"))
+        cells.append(tag("th", head, class_=None if head == "stability" else "n", scope="col"))
     if limited:
         cells.append(tag("th", "remark", scope="col"))
     return tag("thead", tag("tr", cells))

@@ -27,6 +27,11 @@ METHOD_NAMES = {
     "harvest": "Harvest",
 }
 QUALITY_NAMES = {"modularity": "modularity", "cpm": "constant Potts model"}
+NOT_USED = {
+    "clique-percolation": ("quality", "resolution", "runs", "show", "keep"),
+    "harvest": ("quality", "resolution", "k", "runs", "noise", "show"),
+}
+"""Settings that a method does not heed."""
 POLICY = "default-src 'none'; style-src 'unsafe-inline'; img-src data:"
 """What a browser may load for this page: nothing from anywhere."""
 
@@ -119,8 +124,10 @@ def _trust(study: Study) -> Markup:
 
 def _null_figure(study: Study) -> Markup | None:
     if study.nulls is None:
-        text = "No null network was asked for, so it is not known whether chance alone would give modules like these."
-        return _panel("Against chance", None, text)
+        nothing = (
+            "No null network was asked for, so it is not known whether chance alone would give modules like these."
+        )
+        return _panel("Against chance", None, study.chance or nothing)
     z = f", z = {figure(study.nulls.z, 1)}" if is_known(study.nulls.z) else ""
     text = (
         f"Grey: modularity of {count(len(study.nulls.draws), 'random network')} with the same degrees; green: this one "
@@ -200,7 +207,7 @@ def _methods(bundle: Bundle) -> Markup:
 
 def _settings(bundle: Bundle) -> Markup:
     settings = bundle.study.settings.as_dict()
-    aside = {"names", *(("quality", "resolution", "runs") if settings["method"] == "clique-percolation" else ("k",))}
+    aside = {"names", *NOT_USED.get(settings["method"], ("k", "keep"))}
     rows = [
         (key.replace("_", " "), plain(value))
         for key, value in settings.items()

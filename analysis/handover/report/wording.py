@@ -36,3 +36,8 @@ def plain(value: Any) -> str:
     if isinstance(value, float):
         return f"{value:g}" if float(f"{value:g}") == value else repr(value)
     return str(value)
+
+
+def percent(share: float) -> str:
+    """Return a share as `10 %`."""
+    return f"{100 * share:.3g} %"
