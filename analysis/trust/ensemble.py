@@ -156,20 +156,22 @@ def consensus(network: Network, runs: Sequence[NDArray[Any]], method: Optimiser,
     """Return the consensus partition: one run on the edges weighted by the share of runs that join their ends.
 
     Lancichinetti & Fortunato 2012, on the network's own edges as in Tandon et al. 2019, so that no node × node array is
-    needed. Weights below one half of the runs are kept; edges never joined are left out.
+    needed. The shares multiply the weights, and the quality keeps its resolution and the network's own strengths: runs
+    that agree have the partition on which they agree for their consensus. Edges never joined are left out.
     """
     joined = np.zeros(network.edge_count)
     for labels in runs:
         joined += labels[network.sources] == labels[network.targets]
-    kept = joined > 0
-    shares = network.with_edges(kept)
-    weighted = Network(shares.names, shares.sources, shares.targets, locked(joined[kept] / len(runs)), shares.label)
-    modularity_method = Leiden(iterations=UNTIL_STABLE) if isinstance(method, Leiden) else method
-    labels = modularity_method.labels(weighted, seed=seed)
+    optimiser = Leiden(
+        quality=method.quality if isinstance(method, Leiden) else "modularity",
+        resolution=method.resolution,
+        iterations=UNTIL_STABLE,
+    )
+    found = optimiser.labels_by_shares(network, joined / max(len(runs), 1), seed=seed)
     return Modules.from_labels(
-        labels,
+        found,
         method=method.key,
         settings={"consensus_of": len(runs)},
-        quality=method.score(network, labels),
+        quality=method.score(network, found),
         seed=seed,
     )
