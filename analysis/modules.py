@@ -161,15 +161,16 @@ def modularity(network: Network, labels: NDArray[Any], resolution: float = 1.0) 
 def extended_modularity(network: Network, modules: Modules) -> float:
     """Modularity of a cover, each pair of nodes shared out over their numbers of modules.
 
-    ``EQ = 1/2W Σ_c Σ_{v,w∈c} (1/(O_v O_w)) [A_vw − k_v k_w / 2W]`` (Shen, Cheng, Cai & Hu 2009, eq. 2).
-    Equals `modularity` for a partition.
+    ``EQ = 1/2W Σ_c Σ_{v,w∈c} (1/(O_v O_w)) [A_vw − k_v k_w / 2W]`` (Shen, Cheng, Cai & Hu 2009, eq. 2). A node in no
+    module counts as a module of its own, as theirs do, so that covers that leave nodes out compare with partitions.
+    Equals `modularity` of `Modules.full_labels` for a partition.
     """
     total = float(network.edge_weights.sum())
-    if total == 0 or not len(modules):
+    if total == 0:
         return 0.0
     share = 1.0 / np.maximum(modules.homes, 1)
     inside = 0.0
-    expected = 0.0
+    expected = float((network.strength[modules.homes == 0] ** 2).sum())
     for group in modules.members:
         block = network.adjacency[group][:, group]
         inside += float(share[group] @ (block @ share[group]))
