@@ -116,6 +116,12 @@
     }
   }
 
+  /** The ready point of the ruler that is nearest to a resolution; −1 where none is ready. */
+  function nearestReady(ruler, value) {
+    const ready = ruler.grid.map((_, index) => index).filter((index) => ruler.modules[index] !== null);
+    return ready.length ? ready[nearest(ready.map((index) => ruler.grid[index]), value)] : -1;
+  }
+
   function nearest(grid, value) {
     let best = 0;
     grid.forEach((each, index) => {
@@ -125,6 +131,7 @@
   }
 
   async function preview(index) {
+    if (index < 0) return;
     await state.loaded;
     const turn = (state.previews += 1);
     const decoded = await colours(rulerUrl(index));
@@ -201,7 +208,7 @@
       const optimised = wanted.method === "leiden" || wanted.method === "louvain";
       const answered =
         shown && ["network", "method", "quality", "resolution"].every((key) => shown[key] === wanted[key]);
-      if (optimised && !answered && !state.dragging) preview(nearest(data.grid, wanted.resolution));
+      if (optimised && !answered && !state.dragging) preview(nearestReady(data, wanted.resolution));
       return noUpdate();
     },
 

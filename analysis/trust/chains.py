@@ -9,13 +9,15 @@ from numpy.typing import NDArray
 
 from analysis.errors import SettingError
 from analysis.methods import Leiden
+from analysis.methods.leiden import weight_unit
 from analysis.methods.randomness import child_seeds
 from analysis.network import FloatArray, IntArray, Network, locked
 from analysis.trust.noise import Noise
 
 LabelTable = NDArray[np.int32]
 
-_COARSE_END = {"modularity": 0.05, "cpm": 0.001}
+_COARSE_END_MODULARITY = 0.05
+_COARSE_END_CPM = (0.001, 0.1)
 _FINE_END_CPM = 0.9
 _FINE_END_MODULARITY = (4.0, 60.0)
 _ITERATIONS = 2
@@ -28,7 +30,8 @@ def resolution_grid(
 
     The ends, where they are not given:
 
-    - constant Potts model: 0.001 to 0.9; the resolution is an inside density, so nothing lies beyond 1;
+    - constant Potts model: from half the density of the whole network (held between 0.001 and 0.1) to 0.9; below,
+      one module grows so large that the genes at its rim fall off it one by one; the resolution is an inside density, so nothing lies beyond 1;
     - modularity: from 0.05 to the resolution beyond which nine edges in ten no longer hold their two ends together.
       Two nodes of strengths `k_i`, `k_j` with an edge `w` gain by joining while ``γ < 2Ww / (k_i k_j)`` (from the
       formula of modularity). The fine end is held between 4 and 60: beyond that, ask for tight groups instead.
@@ -37,7 +40,7 @@ def resolution_grid(
     """
     if steps < 2:
         raise SettingError(f"a sweep of {steps} steps; it needs at least 2")
-    low = _COARSE_END[quality] if low is None else low
+    low = _coarse_end(network, quality) if low is None else low
     high = _fine_end(network, quality) if high is None else high
     if not 0 < low < high:
         raise SettingError(
@@ -48,6 +51,14 @@ def resolution_grid(
     if quality == "modularity" and 0 < nearest < steps - 1:
         grid[nearest] = 1.0
     return grid
+
+
+def _coarse_end(network: Network, quality: str) -> float:
+    if quality == "modularity":
+        return _COARSE_END_MODULARITY
+    pairs = network.node_count * (network.node_count - 1) / 2
+    weight = float(network.edge_weights.sum()) / weight_unit(network) if network.edge_count else 0.0
+    return float(np.clip(0.5 * weight / max(pairs, 1.0), *_COARSE_END_CPM))
 
 
 def _fine_end(network: Network, quality: str) -> float:
