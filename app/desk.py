@@ -18,13 +18,15 @@ import numpy as np
 
 from analysis.compute import run_all
 from analysis.errors import CorymbError, InputError
-from analysis.evidence import run_study
+from analysis.evidence import HARVEST, method_of, run_study
 from analysis.handover import Bundle, Source, as_zip, bundle_files
 from analysis.intake import Reading, parse_network, read_network
 from analysis.modules import Modules
 from analysis.network import FloatArray, Network
 from analysis.progress import Progress
 from analysis.study import Study, StudySettings
+from analysis.trust.noise import REWIRED
+from analysis.trust.noise_curve import NoiseCurve, noise_curve
 from analysis.trust.sweep import SweepSettings, preview_points, resolution_grid, run_sweep
 from app.jobs import Jobs
 from app.map.colours import Anchor, make_anchor, pack_colours
@@ -53,6 +55,7 @@ class Desk:
         self._lock = threading.RLock()
         self._anchors: OrderedDict[str, Anchor] = OrderedDict()
         self._rulers: dict[tuple[str, str], Ruler] = {}
+        self._curves: dict[str, NoiseCurve] = {}
         self._packed: OrderedDict[str, tuple[str, bytes]] = OrderedDict()
 
     # networks
@@ -228,6 +231,43 @@ class Desk:
         drawing = self.drawing(study.network.fingerprint) if study is not None else None
         return None if study is None or drawing is None else pack_colours(drawing[1], study.modules)
 
+    # the noise curve
+
+    def start_curve(self, study_id: str) -> str | None:
+        """Begin the noise curve of a finished study, unless it is done; return the job's id, None for none."""
+        study = self.workspace.study(study_id)
+        if study is None or study.settings.method == HARVEST:
+            return None
+        known = self.curve(study_id)
+        if known is not None and known.complete:
+            return None
+
+        def keep(curve: NoiseCurve) -> None:
+            with self._lock:
+                self._curves[study_id] = curve
+
+        def work(progress: Progress) -> bool:
+            method, seed = method_of(study.settings), study.settings.seed
+            compute = self.jobs.long
+            curve = noise_curve(study.network, method, seed=seed, compute=compute, progress=progress, on_point=keep)
+            keep(curve)
+            arrays = {name: getattr(curve, name) for name in CURVE_ARRAYS}
+            self.workspace.save_arrays("noise curve", study_id, arrays)
+            return True
+
+        return self.jobs.start("curve", study_id, work)
+
+    def curve(self, study_id: str | None) -> NoiseCurve | None:
+        """Return the noise curve of a study as far as it has come, None where nothing is known."""
+        if study_id is None:
+            return None
+        with self._lock:
+            found = self._curves.get(study_id)
+        if found is not None:
+            return found
+        arrays = self.workspace.arrays("noise curve", study_id)
+        return None if arrays is None else NoiseCurve(REWIRED, **arrays)
+
     # handing over
 
     def start_packing(self, study_id: str) -> str:
@@ -274,6 +314,7 @@ class Desk:
 
 AT_HAND = "network at hand"
 INPUT_FOLDER = "input"
+CURVE_ARRAYS = ("shares", "vi", "ami", "null_vi", "null_ami")
 ZIPS_AT_HAND = 4
 PREVIEW_EDGES = 60_000
 QUICK_WORK = 100_000

@@ -50,6 +50,7 @@ def _stores() -> list[Any]:
         dcc.Store(id="pick", storage_type="memory"),
         dcc.Store(id="drawing-kind", storage_type="memory", data="whole"),
         dcc.Store(id="fault", storage_type="memory", data=""),
+        dcc.Store(id="trust-seen", storage_type="memory"),
         dcc.Store(id="names-version", storage_type="memory", data=0),
         dcc.Store(id="ruler-data", storage_type="memory"),
         dcc.Store(id="map-order", storage_type="memory"),

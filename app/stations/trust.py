@@ -6,9 +6,11 @@ from typing import Any
 
 from dash import html
 
+from analysis.evidence import HARVEST
 from analysis.handover.report.charts import null_chart
 from analysis.study import Study
 from analysis.verdicts import CLUSTERED_CAUTION, is_firm
+from app.figures import noise_figure
 from app.parts import bar, button, figure, heading, link, notice, number, sentence, sentences, table
 from app.view import Pane, View
 
@@ -32,12 +34,38 @@ def render(view: View) -> Pane:
         return Pane(TITLE, [sentence("There is no clustering yet.", first=True)], [])
     body: list[Any] = [
         *sentences(study.sentences),
+        *_noise_figure(view),
         *_chance_figure(study),
         *_strip(study),
         *_doubtful(study),
         notice(CLUSTERED_CAUTION),
     ]
-    return Pane(TITLE, body, [] if study.nulls is not None else [chance_button()])
+    return Pane(TITLE, body, _actions(view, study))
+
+
+def _actions(view: View, study: Study) -> list[Any]:
+    """Return buttons for what was not computed yet and takes long; on small networks it begins by itself."""
+    if study.settings.method == HARVEST:
+        return []
+    actions = []
+    if study.nulls is None:
+        actions.append(
+            button("Compare with chance", {"type": "compare-with-chance", "index": 0}, kind="button primary")
+        )
+    if view.desk.curve(view.study_id) is None:
+        actions.append(button("Noise curve", {"type": "noise-curve", "index": 0}))
+    return actions
+
+
+def _noise_figure(view: View) -> list[Any]:
+    curve = view.desk.curve(view.study_id)
+    if curve is None:
+        return []
+    words = (
+        "How far the partition drifts (variation of information, 0 the same) as a share of the edges is rewired with "
+        "degrees kept, beside random networks with the same degrees (Karrer, Levina & Newman 2008)."
+    )
+    return [heading("Under noise"), sentence(curve.sentence()), figure(noise_figure(curve), words)]
 
 
 def _chance_figure(study: Study) -> list[Any]:
@@ -103,8 +131,3 @@ def _doubtful(study: Study) -> list[Any]:
     ]
     head = ["gene", "module", "stays", "", "second home", ""]
     return [heading("Genes in doubt"), table(head, rows, numeric=[3, 5], name="Genes in doubt")]
-
-
-def chance_button() -> Any:
-    """Return the button that compares with null networks."""
-    return button("Compare with chance", {"type": "compare-with-chance", "index": 0}, kind="button primary")

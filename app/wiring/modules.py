@@ -12,7 +12,6 @@ from analysis.study import StudySettings
 from app.desk import Desk
 from app.wiring.triggers import pressed
 
-NULLS = 100
 HARVEST_NULLS = 3
 
 
@@ -97,19 +96,6 @@ def wire(app: Dash, desk: Desk) -> None:
         if entry is None:
             return no_update
         return {**wanted, **{key: entry.settings[key] for key in wanted if key in entry.settings}}
-
-    @app.callback(
-        Output("wanted", "data", allow_duplicate=True),
-        Input({"type": "compare-with-chance", "index": ALL}, "n_clicks"),
-        Input("station", "data"),
-        State("wanted", "data"),
-        prevent_initial_call=True,
-    )
-    def compare_with_chance(_clicks: Any, station: str, wanted: dict[str, Any]) -> Any:
-        if not wanted or wanted["nulls"]:
-            return no_update
-        arrived = ctx.triggered_id == "station" and station == "trust" and desk.is_small(wanted.get("network"))
-        return {**wanted, "nulls": NULLS} if arrived or pressed("compare-with-chance") else no_update
 
     @app.callback(
         Output("names-version", "data"),

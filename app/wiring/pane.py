@@ -50,10 +50,19 @@ def wire(app: Dash, desk: Desk) -> None:
         Input("names-version", "data"),
         Input("fault", "data"),
         Input("map-order", "data"),
+        Input("trust-seen", "data"),
         State("wanted", "data"),
     )
     def fill(
-        station: str, pick: Any, shown: Any, fingerprint: str | None, _names: Any, message: str, _map: Any, wanted: Any
+        station: str,
+        pick: Any,
+        shown: Any,
+        fingerprint: str | None,
+        _names: Any,
+        message: str,
+        _map: Any,
+        _trust: Any,
+        wanted: Any,
     ) -> Any:
         view = _view(desk, fingerprint, shown, wanted, message)
         place = station if station in STATIONS else START

@@ -1,0 +1,77 @@
+"""What the Trust station asks for: null networks and the noise curve, by themselves where that is quick."""
+
+from __future__ import annotations
+
+from typing import Any
+
+from dash import ALL, Dash, Input, Output, State, ctx, no_update
+
+from analysis.evidence import HARVEST
+from app.desk import Desk
+from app.stations import trust
+from app.wiring.triggers import pressed
+
+NULLS = 100
+
+
+def wire(app: Dash, desk: Desk) -> None:
+    """Add the callbacks."""
+
+    @app.callback(
+        Output("wanted", "data", allow_duplicate=True),
+        Input({"type": "compare-with-chance", "index": ALL}, "n_clicks"),
+        Input("station", "data"),
+        Input("shown", "data"),
+        State("wanted", "data"),
+        prevent_initial_call=True,
+    )
+    def compare_with_chance(_clicks: Any, station: str, shown: Any, wanted: Any) -> Any:
+        if not wanted or wanted["nulls"] or wanted["method"] == HARVEST:
+            return no_update
+        by_itself = (
+            ctx.triggered_id in ("station", "shown")
+            and station == trust.KEY
+            and _answered(shown, wanted)
+            and desk.is_small(wanted.get("network"))
+        )
+        return {**wanted, "nulls": NULLS} if by_itself or pressed("compare-with-chance") else no_update
+
+    @app.callback(
+        Output("tick", "disabled", allow_duplicate=True),
+        Input({"type": "noise-curve", "index": ALL}, "n_clicks"),
+        Input("shown", "data"),
+        Input("station", "data"),
+        prevent_initial_call=True,
+    )
+    def draw_curve(_clicks: Any, shown: Any, station: str) -> Any:
+        if not shown or station != trust.KEY:
+            return no_update
+        study = desk.workspace.study(shown["study"])
+        waits = study is None or (study.nulls is None and desk.is_small(shown["network"]))
+        by_itself = ctx.triggered_id in ("shown", "station") and desk.is_small(shown["network"]) and not waits
+        if by_itself or pressed("noise-curve"):
+            return no_update if desk.start_curve(shown["study"]) is None else False
+        return no_update
+
+    @app.callback(
+        Output("trust-seen", "data"),
+        Input("tick", "n_intervals"),
+        State("station", "data"),
+        State("shown", "data"),
+        State("trust-seen", "data"),
+        prevent_initial_call=True,
+    )
+    def watch_curve(_ticks: Any, station: str, shown: Any, seen: Any) -> Any:
+        if not shown or station != trust.KEY:
+            return no_update
+        curve = desk.curve(shown["study"])
+        if curve is None:
+            return no_update
+        now = [shown["study"], int((curve.vi == curve.vi).sum() + (curve.null_vi == curve.null_vi).sum())]
+        return no_update if now == seen else now
+
+
+def _answered(shown: Any, wanted: Any) -> bool:
+    """Whether the clustering shown is the one that is asked for."""
+    keys = ("network", "method", "quality", "resolution")
+    return bool(shown) and all(shown.get(key) == wanted.get(key) for key in keys)
