@@ -266,7 +266,7 @@ def test_a_rerun_repeats_what_was_asked(tmp_path, options):
     assert _files(tmp_path / "more") == _files(tmp_path / "again")
     before, after = _files(tmp_path / "out"), _files(tmp_path / "again")
     assert before["membership.csv"] == after["membership.csv"]
-    assert after["modules.csv"].decode().splitlines()[1].startswith("M1,the first,")
+    assert before["modules.csv"].decode().replace("M1,,", "M1,the first,") == after["modules.csv"].decode()
 
 
 def test_the_file_is_found_beside_the_recipe_too(karate_out, tmp_path):

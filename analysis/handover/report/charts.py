@@ -80,9 +80,9 @@ def null_chart(nulls: NullDraws) -> Markup:
 
 def bar(share: float) -> Markup:
     """Draw a share as a length; doubtful ones in ochre."""
-    full = tag("rect", width=72, height=8, rx=4, fill="#e4e9e6")
-    length = tag("rect", width=72 * min(max(share, 0.0), 1.0), height=8, rx=4, fill=OCHRE if share < DOUBT else LEAF)
-    return tag("svg", full, length, viewBox="0 0 72 8", aria_hidden="true")
+    full = tag("rect", width=56, height=8, rx=4, fill="#e4e9e6")
+    length = tag("rect", width=56 * min(max(share, 0.0), 1.0), height=8, rx=4, fill=OCHRE if share < DOUBT else LEAF)
+    return tag("svg", full, length, viewBox="0 0 56 8", aria_hidden="true")
 
 
 def _frame(title: str, parts: Sequence[Markup]) -> Markup:

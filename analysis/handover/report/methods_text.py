@@ -68,8 +68,8 @@ def _harvest(study: Study) -> list[str]:
     if chosen.cut:
         sentences.append(
             f"They were kept down to the support at which {count(chosen.nulls, 'random network')} with the same "
-            f"degrees [swaps], harvested likewise, gave {chosen.level:g} times as many modules (a false discovery rate by "
-            "permutation [rates])."
+            f"degrees [swaps], harvested likewise, gave {chosen.level:g} times as many modules (a false discovery rate "
+            "by permutation [rates])."
         )
     return sentences
 

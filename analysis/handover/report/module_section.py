@@ -13,8 +13,8 @@ from analysis.handover.report.wording import MISSING, chance, count, figure, is_
 from analysis.study import Study
 
 ROWS_OPEN = 25
-LEAST_SURE = 15
-LIMIT_REMARK = "few edges inside"
+LEAST_SURE = 12
+LIMIT_MARK = "*"
 
 _HEADS = {
     "size": "genes",
@@ -22,33 +22,43 @@ _HEADS = {
     "cut_edges": "edges cut",
     "internal_density": "inside density",
     "conductance": "conductance",
+    "resolution_from": "holds at resolution",
+    "returned": "comes back",
     "stability": "stability",
     "evidence": "evidence",
     "support": "support",
-    "p_value": "p",
     "q_value": "q",
 }
 _HARVESTED = "share of chance"
 """What the q-value of a harvested module is: of the modules with its support or more, the share that chance gives."""
 _WHOLE = ("size", "internal_edges", "cut_edges")
-_CHANCES = ("p_value", "q_value")
+_LEFT = ("returned",)
 
 
 def module_tables(study: Study) -> Markup:
     """Return the table of all modules; beyond the largest ones, folded."""
     table = study.module_table
-    shown = [column for column in _HEADS if column in _WHOLE or table[column].notna().any()]
-    ranges = bool(table["resolution_from"].notna().any())
-    limited = bool(table["below_resolution_limit"].any())
-    records = table.to_dict("records")
-    rows = [_row(position, record, shown, ranges, limited) for position, record in enumerate(records)]
+    if study.returned is not None:
+        table = table.assign(returned=study.returned)
+    shown = [column for column in _HEADS if column in table and table[column].notna().any()]
     heads = _HEADS | ({"q_value": _HARVESTED} if study.settings.method == "harvest" else {})
-    head = _head([heads[column] for column in shown], ranges, limited)
+    cells = [tag("th", heads[column], class_=None if column in _LEFT else "n", scope="col") for column in shown]
+    head = tag("thead", tag("tr", tag("th", "module", scope="col"), cells))
+    if not has_limit(study):
+        table = table.assign(below_resolution_limit=False)
+    records = enumerate(table.to_dict("records"))
+    rows = [_row(position, record, shown, study.copies) for position, record in records]
     parts = [_wide(head, rows[:ROWS_OPEN])]
     if rest := rows[ROWS_OPEN:]:
         summary = f"The other {count(len(rest), 'module')}, M{ROWS_OPEN + 1} to M{len(rows)}"
         parts.append(tag("details", tag("summary", summary), _wide(head, rest)))
     return join(parts)
+
+
+def has_limit(study: Study) -> bool:
+    """Tell whether the resolution limit bears on these modules: where modularity was optimised, and some are below."""
+    optimised = study.settings.method in ("leiden", "louvain") and study.settings.quality == "modularity"
+    return optimised and bool(study.module_table["below_resolution_limit"].any())
 
 
 def least_sure(study: Study) -> Markup | None:
@@ -71,7 +81,10 @@ def least_sure(study: Study) -> Markup | None:
     rows = [_doubtful_row(record) for record in first.to_dict("records")]
     more = len(doubtful) - len(first)
     rest = f" The other {more:,} are in membership.csv." if more else ""
-    note = f"{count(len(doubtful), 'gene')} of modules of three or more stay there in fewer than six runs of ten.{rest}"
+    where = "copies" if study.copies else "runs"
+    stay = "stays" if len(doubtful) == 1 else "stay"
+    genes = count(len(doubtful), "gene")
+    note = f"Of modules of three genes or more, {genes} {stay} in fewer than six of ten {where}.{rest}"
     return join([tag("p", note), _wide(head, rows)])
 
 
@@ -95,41 +108,23 @@ def gene_lists(study: Study) -> Markup:
     return tag("details", summary, note, lists)
 
 
-def _head(heads: list[str], ranges: bool, limited: bool) -> Markup:
-    cells = [tag("th", "module", scope="col")]
-    for head in heads:
-        if head == "stability" and ranges:
-            cells.append(tag("th", "holds at resolution", class_="n", scope="col"))
-        cells.append(tag("th", head, class_=None if head == "stability" else "n", scope="col"))
-    if limited:
-        cells.append(tag("th", "remark", scope="col"))
-    return tag("thead", tag("tr", cells))
-
-
-def _row(position: int, record: dict[Any, Any], shown: list[str], ranges: bool, limited: bool) -> Markup:
+def _row(position: int, record: dict[Any, Any], shown: list[str], copies: int) -> Markup:
     dot = tag("span", class_="dot", style=f"background:{module_colour(position, record['size'])}")
-    cells = [tag("td", dot, str(record["module"]), _name(record["name"]), class_="m")]
-    for column in shown:
-        if column == "stability":
-            cells += [_range(record)] if ranges else []
-            cells.append(_bar_cell(record[column]))
-        else:
-            cells.append(tag("td", _figure(column, record[column]), class_="n"))
-    if limited:
-        remark = tag("span", LIMIT_REMARK, class_="doubt") if record["below_resolution_limit"] else ""
-        cells.append(tag("td", remark))
-    return tag("tr", cells)
+    name = tag("td", dot, str(record["module"]), _name(record["name"]), class_="m")
+    return tag("tr", name, [_cell(column, record, copies) for column in shown])
 
 
-def _figure(column: str, value: Any) -> str:
+def _cell(column: str, record: dict[Any, Any], copies: int) -> Markup:
+    value = record[column]
+    if column == "internal_edges" and record["below_resolution_limit"]:
+        return tag("td", count(value), tag("span", LIMIT_MARK, class_="mark doubt"), class_="n")
+    if column == "returned":
+        return tag("td", bar(value / copies), f"{value} of {copies}", class_="bar")
+    if column == "resolution_from":
+        return tag("td", f"{value:.2g} to {record['resolution_to']:.2g}" if is_known(value) else MISSING, class_="n")
     if column in _WHOLE:
-        return count(value)
-    return chance(value) if column in _CHANCES else figure(value)
-
-
-def _range(record: dict[Any, Any]) -> Markup:
-    low, high = record["resolution_from"], record["resolution_to"]
-    return tag("td", f"{low:.2g} to {high:.2g}" if is_known(low) else MISSING, class_="n")
+        return tag("td", count(value), class_="n")
+    return tag("td", chance(value) if column == "q_value" else figure(value), class_="n")
 
 
 def _bar_cell(value: Any) -> Markup:

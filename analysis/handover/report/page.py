@@ -12,7 +12,7 @@ from analysis.handover.report.citations import cited
 from analysis.handover.report.map_figure import draw_map
 from analysis.handover.report.markup import Markup, join, short, tag
 from analysis.handover.report.methods_text import methods_sentences
-from analysis.handover.report.module_section import gene_lists, least_sure, module_tables
+from analysis.handover.report.module_section import LIMIT_MARK, gene_lists, has_limit, least_sure, module_tables
 from analysis.handover.report.style import STYLE
 from analysis.handover.report.wording import chance, count, figure, is_known, plain
 from analysis.network import FloatArray
@@ -160,22 +160,32 @@ def _panel(title: str, picture: Markup | None, caption: str) -> Markup:
 
 
 def _modules(study: Study) -> Markup:
-    note = (
-        "Stability: how much of a module comes back, 1 being all of it. Evidence: how much denser it is than its "
-        "degrees give by chance, in nats per gene. Support: the one times the other; it orders modules and is no "
-        "probability."
-    )
-    if study.module_table["below_resolution_limit"].any():
-        note += (
-            " Few edges inside: below the resolution limit of modularity; it may be merged with a neighbour elsewhere."
-        )
     return tag(
         "section",
         tag("h2", "The modules"),
-        tag("p", note, class_="note"),
+        tag("p", " ".join(_explained(study)), class_="note"),
         module_tables(study) if len(study.modules) else tag("p", "No module was found."),
         gene_lists(study) if len(study.modules) else None,
     )
+
+
+def _explained(study: Study) -> list[str]:
+    """Return what the columns of the table mean."""
+    told = []
+    if study.returned is not None:
+        told.append("Comes back: in how many noisy copies of the network half or more of a module is found again.")
+    told += [
+        "Stability: how much of it is found again on average, over copies and resolutions; 1 is all of it everywhere."
+        if study.copies
+        else "Stability: how much of it is found again on average; 1 is all of it everywhere.",
+        "Evidence: how much denser it is than its degrees give by chance, in nats per gene.",
+        "Support: stability times evidence; it orders modules and is no probability.",
+    ]
+    if study.module_table["q_value"].notna().any() and study.settings.method != "harvest":
+        told.append("q: the p-value against modules of like size found in random networks, corrected over all modules.")
+    if has_limit(study):
+        told.append(f"{LIMIT_MARK} so few edges inside that modularity could have merged it (resolution limit).")
+    return told
 
 
 def _cautions() -> Markup:

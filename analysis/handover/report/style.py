@@ -45,18 +45,18 @@ svg text { font-family: inherit; fill: var(--soft); font-size: 12px; }
 .caution ul { margin: 0; padding-left: 18px; max-width: 76ch; } .caution li { margin: 0 0 5px; }
 .wide { overflow-x: auto; background: var(--panel); border: 1px solid var(--line); border-radius: 7px;
   margin: 12px 0 0; }
-table { border-collapse: collapse; width: 100%; font-variant-numeric: tabular-nums; }
-th { text-align: left; font-weight: 400; color: var(--soft); font-size: 13px; line-height: 1.25;
+table { border-collapse: collapse; width: 100%; font-size: 14px; font-variant-numeric: tabular-nums; }
+th { overflow-wrap: normal; text-align: left; font-weight: 400; color: var(--soft); font-size: 13px; line-height: 1.25;
   vertical-align: bottom; }
-th, td { padding: 6px 10px; border-bottom: 1px solid #ecece4; }
+th, td { padding: 4.5px 7px; border-bottom: 1px solid #ecece4; }
 th:first-child, td:first-child { padding-left: 18px; } th:last-child, td:last-child { padding-right: 18px; }
 tr:last-child td { border-bottom: 0; }
-th.n, td.n { text-align: right; white-space: nowrap; }
-td .doubt { white-space: nowrap; }
+th.n, td.n { text-align: right; } td.n { white-space: nowrap; }
+.mark { position: absolute; padding-left: 1px; }
 td.m { white-space: nowrap; font-weight: 700; } td.m span.name { font-weight: 400; white-space: normal; }
 .dot { display: inline-block; width: 11px; height: 11px; border-radius: 3px; margin-right: 8px; vertical-align: -1px;
   print-color-adjust: exact; -webkit-print-color-adjust: exact; }
-td.bar { white-space: nowrap; } td.bar svg { width: 72px; height: 8px; margin-right: 8px; vertical-align: 1px; }
+td.bar { white-space: nowrap; } td.bar svg { width: 56px; height: 8px; margin-right: 8px; vertical-align: 1px; }
 .doubt { color: var(--ochre); }
 details { margin: 12px 0 0; }
 summary { cursor: pointer; color: var(--leaf); font-weight: 700; border-radius: 6px; }

@@ -39,5 +39,5 @@ def plain(value: Any) -> str:
 
 
 def percent(share: float) -> str:
-    """Return a share as `10 %`."""
-    return f"{100 * share:.3g} %"
+    """Return a share as `10 %`, not to be broken."""
+    return f"{100 * share:.3g}\u00a0%"
