@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass, replace
 
 import numpy as np
@@ -24,7 +24,7 @@ from analysis.study import SUGGEST, NullDraws, Study, StudySettings
 from analysis.study_tables import ModuleEvidence, evidence_table, membership_table
 from analysis.trust.chains import ChainTask, resolution_grid
 from analysis.trust.ensemble import Recurrence, consensus, noise_tasks, score_recurrence, seed_tasks
-from analysis.trust.significance import against_nulls, verdict
+from analysis.trust.significance import against_nulls, ignore, verdict
 from analysis.trust.support import CopySettings, ModuleSupport, copy_tasks, score_support
 from analysis.trust.sweep import SweepSettings, run_sweep
 from analysis.verdicts import partition_sentences
@@ -42,6 +42,7 @@ def run_study(
     *,
     compute: Compute | None = None,
     progress: Progress = silent,
+    on_draws: Callable[[NullDraws], None] = ignore,
 ) -> Study:
     """Cluster a network and gather the evidence that the settings ask for.
 
@@ -53,6 +54,8 @@ def run_study(
       question that was asked: modularity for wide neighbourhoods, the constant Potts model for tight groups; without
       noise it is that over the ensemble. Its range of resolution is where it holds on those copies.
     - p-values compare with modules found the same way in null networks.
+
+    `on_draws` is given the modularities of the null networks as they come in.
 
     Raises
     ------
@@ -70,7 +73,9 @@ def run_study(
     modules = ensemble.shown
     noisy = _run_noise(network, method, settings, compute, portion(progress, 0.35, 0.45))
     support = _run_support(network, modules, settings, compute, portion(progress, 0.45, 0.6))
-    chance = _run_nulls(network, method, modules, settings, compute=compute, progress=portion(progress, 0.6, 0.98))
+    chance = _run_nulls(
+        network, method, modules, settings, compute=compute, progress=portion(progress, 0.6, 0.98), on_draws=on_draws
+    )
     recurrence = _recurrence(modules, ensemble, noisy)
     progress(0.98, "writing the tables")
     evidence = _evidence(len(modules), recurrence, support, chance)
@@ -239,11 +244,19 @@ def _run_nulls(
     *,
     compute: Compute,
     progress: Progress,
+    on_draws: Callable[[NullDraws], None],
 ) -> Chance | None:
     if settings.nulls == 0 or network.edge_count == 0:
         return None
     found = against_nulls(
-        network, method, modules, nulls=settings.nulls, seed=settings.seed, compute=compute, progress=progress
+        network,
+        method,
+        modules,
+        nulls=settings.nulls,
+        seed=settings.seed,
+        compute=compute,
+        progress=progress,
+        on_draws=on_draws,
     )
     return Chance(found.draws, found.p_value, found.q_value, verdict(found))
 

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -13,7 +13,7 @@ from analysis.progress import Progress, portion, silent
 from analysis.study import StudySettings
 from analysis.trust.chains import LabelTable
 from analysis.trust.ensemble import Recurrence
-from analysis.trust.harvest import QUICK, Harvest, HarvestSettings, run_harvest
+from analysis.trust.harvest import FULL, QUICK, Harvest, HarvestSettings, run_harvest
 from analysis.trust.support import CopySettings, copy_tasks
 
 
@@ -26,9 +26,10 @@ class HarvestEvidence:
 
 
 def harvest_settings(settings: StudySettings) -> HarvestSettings:
-    """Return the quick form of the harvest with the study's seed; without null networks there is no cut."""
-    nulls = QUICK.nulls if settings.nulls else 0
-    return HarvestSettings(nulls=nulls, cut=settings.keep == "supported" and nulls > 0, seed=settings.seed)
+    """Return the form of the harvest that the study asks for; without null networks there is no cut."""
+    form = FULL if settings.effort == "full" else QUICK
+    nulls = form.nulls if settings.nulls else 0
+    return replace(form, nulls=nulls, cut=settings.keep == "supported" and nulls > 0, seed=settings.seed)
 
 
 def harvest_evidence(

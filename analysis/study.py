@@ -78,6 +78,8 @@ class StudySettings:
         `best` for the run of best quality, `consensus` for the consensus of all runs; for Leiden and Louvain.
     keep : str
         For the harvest: `supported` to cut where chance begins, `all` for all that hold.
+    effort : str
+        For the harvest: `quick` for some 290 runs, `full` for some 740.
     names : mapping
         Names given to modules, `{"M2": "bilayer repair"}`.
     """
@@ -94,6 +96,7 @@ class StudySettings:
     min_weight: float | None = None
     show: str = "best"
     keep: str = "supported"
+    effort: str = "quick"
     names: Mapping[str, str] = field(default_factory=dict)
 
     def __post_init__(self) -> None:
@@ -104,6 +107,8 @@ class StudySettings:
 
         if self.show not in {"best", "consensus"} or self.keep not in {"supported", "all"}:
             raise SettingError("--show takes best or consensus, --keep takes supported or all")
+        if self.effort not in {"quick", "full"}:
+            raise SettingError("--effort takes quick or full")
 
     def as_dict(self) -> dict[str, Any]:
         """Return the settings as plain values, for the summary, the recipe and the workspace."""

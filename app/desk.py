@@ -11,6 +11,7 @@ import threading
 from collections import OrderedDict
 from collections.abc import Callable, Mapping
 from dataclasses import replace
+from functools import partial
 from pathlib import Path
 from typing import Any
 
@@ -24,7 +25,7 @@ from analysis.intake import Reading, parse_network, read_network
 from analysis.modules import Modules
 from analysis.network import FloatArray, Network
 from analysis.progress import Progress
-from analysis.study import Study, StudySettings
+from analysis.study import NullDraws, Study, StudySettings
 from analysis.trust.noise import REWIRED
 from analysis.trust.noise_curve import NoiseCurve, noise_curve
 from analysis.trust.sweep import SweepSettings, preview_points, resolution_grid, run_sweep
@@ -55,6 +56,7 @@ class Desk:
         self._lock = threading.RLock()
         self._anchors: OrderedDict[str, Anchor] = OrderedDict()
         self._rulers: dict[tuple[str, str], Ruler] = {}
+        self._draws: dict[str, NullDraws] = {}
         self._curves: dict[str, NoiseCurve] = {}
         self._packed: OrderedDict[str, tuple[str, bytes]] = OrderedDict()
 
@@ -154,17 +156,24 @@ class Desk:
         def work(progress: Progress) -> bool:
             grid = resolution_grid(network, quality, settings.steps)
             self._keep_ruler(fingerprint, quality, lambda _: Ruler.empty(tuple(grid.tolist())))
-            on_point = self._point_keeper(fingerprint, quality)
-            if network.edge_count <= PREVIEW_EDGES:
-                for point in preview_points(network, quality, grid):
-                    progress(0.0, "sweep over resolutions: a first look")
-                    on_point(point)
-            sweep = run_sweep(network, settings, self.jobs.long, progress, on_point)
+            self._start_preview(fingerprint, quality, grid)
+            sweep = run_sweep(network, settings, self.jobs.long, progress, self._point_keeper(fingerprint, quality))
             finished = self._keep_ruler(fingerprint, quality, lambda ruler: ruler.finished(sweep))
             self.workspace.save_arrays("ruler", key, finished.to_arrays())
             return True
 
         return self.jobs.start("sweep", key, work)
+
+    def _start_preview(self, fingerprint: str, quality: str, grid: FloatArray) -> None:
+        """Fill the ruler from its coarse end with single runs, so that it can be used before the sweep is done."""
+        network = self.network(fingerprint)
+
+        def work(progress: Progress) -> bool:
+            for point in preview_points(network, quality, grid, compute=self.jobs.quick, progress=progress):
+                self._keep_ruler(fingerprint, quality, partial(Ruler.filled, point=point, over=False))
+            return True
+
+        self.jobs.start("preview", f"{fingerprint}:{quality}", work)
 
     def ruler(self, fingerprint: str, quality: str) -> Ruler | None:
         """Return the ruler as far as it is filled, None where nothing is known."""
@@ -209,7 +218,8 @@ class Desk:
 
         def work(progress: Progress) -> bool:
             compute = self.jobs.quick if _is_quick(network, settings) else self.jobs.long
-            study = run_study(network, settings, compute=compute, progress=progress)
+            draws = partial(self._keep_draws, key)
+            study = run_study(network, settings, compute=compute, progress=progress, on_draws=draws)
             # the trail first: a study without its line in the trail would never get one
             self.workspace.save_clustering(TrailEntry.of(fingerprint, settings.as_dict(), _figures(study)))
             self.workspace.save_study(key, study)
@@ -218,12 +228,26 @@ class Desk:
         request = {"fingerprint": fingerprint, "settings": settings.as_dict()}
         return key, self.jobs.start("study", key, work, request)
 
+    def _keep_draws(self, study_id: str, draws: NullDraws) -> None:
+        with self._lock:
+            self._draws[study_id] = draws
+
+    def draws(self, study_id: str | None) -> NullDraws | None:
+        """Return the null networks' modularities as they come in, for a study that is on its way."""
+        with self._lock:
+            return None if study_id is None else self._draws.get(study_id)
+
     def study(self, study_id: str | None) -> Study | None:
         """Return a finished study with the names given to its modules, None where it is not ready."""
         if not study_id:
             return None
         study = self.workspace.study(study_id)
         return None if study is None else study.named(self.workspace.names(study_id))
+
+    def anchor_colours(self, fingerprint: str) -> bytes | None:
+        """Return the colours of the partition that the map was drawn from, to be shown until anything else is ready."""
+        drawing = self.drawing(fingerprint)
+        return None if drawing is None else pack_colours(drawing[1], drawing[1].modules)
 
     def study_colours(self, study_id: str) -> bytes | None:
         """Return the colours of a finished study, packed for the map."""
@@ -316,7 +340,6 @@ AT_HAND = "network at hand"
 INPUT_FOLDER = "input"
 CURVE_ARRAYS = ("shares", "vi", "ami", "null_vi", "null_ami")
 ZIPS_AT_HAND = 4
-PREVIEW_EDGES = 60_000
 QUICK_WORK = 100_000
 SMALL_EDGES = 20_000
 

@@ -22,6 +22,7 @@ WANTED = {
     "nulls": 0,
     "show": "best",
     "keep": "supported",
+    "effort": "quick",
 }
 
 

@@ -11,10 +11,12 @@ from dash import dcc, html
 from analysis.modules import expected_density
 from analysis.network import Network
 from analysis.study import Study
+from analysis.trust.ensemble import standing
 from analysis.verdicts import DEGREE_CAUTION, STRUCTURE_CAUTION, is_firm, module_sentence
 from app.parts import NOTHING, bar, button, heading, link, notice, number, sentence, swatch, table
 from app.view import Pane, View
 
+DOUBT = 0.75
 GENES_SHOWN = 300
 PARTNERS_SHOWN = 60
 
@@ -106,17 +108,23 @@ def _returned(study: Study, module: int, *, firm: bool) -> list[list[Any]]:
 def _members(study: Study, module: int) -> list[Any]:
     number_ = study.modules.numbers[module]
     rows = study.membership[study.membership["module"] == number_]
+    homes = study.modules.homes[[study.network.index[gene] for gene in rows["gene"]]]
+    words = standing(rows["confidence"].to_numpy(np.float64), homes)
     lines = [
         [
             link(row["gene"], {"type": "pick-gene", "gene": row["gene"]}),
             html.Span(
-                [bar(float(row["confidence"]), doubt=row["confidence"] < 0.75), number(float(row["confidence"]))]
+                [
+                    bar(float(row["confidence"]), doubt=row["confidence"] < DOUBT),
+                    number(float(row["confidence"])),
+                    html.Span(f" {words[place]}", className="hint"),
+                ]
             ),
             row["second_module"] if isinstance(row["second_module"], str) else NOTHING,
             f"{row['degree']}",
             row["role"],
         ]
-        for _, row in rows.head(GENES_SHOWN).iterrows()
+        for place, (_, row) in enumerate(rows.head(GENES_SHOWN).iterrows())
     ]
     head = ["gene", "stays here", "second home", "degree", "role"]
     parts: list[Any] = [heading("Genes"), table(head, lines, numeric=[3], name="Genes of the module")]

@@ -51,7 +51,11 @@ def _network_rules(desk: Desk) -> dict[str, Callable[..., Response]]:
     def ruler(fingerprint: str, quality: str, position: int) -> Response:
         return _bytes(desk.ruler_colours(fingerprint, quality, position))
 
+    def anchor(fingerprint: str) -> Response:
+        return _bytes(desk.anchor_colours(fingerprint))
+
     return {
+        "/data/<fingerprint>/anchor": anchor,
         "/data/<fingerprint>/positions": positions,
         "/data/<fingerprint>/edges": edges,
         "/data/<fingerprint>/degrees": degrees,

@@ -73,9 +73,11 @@ class Ruler:
         """Return a ruler of which nothing is ready."""
         return cls(tuple(grid), (None,) * len(grid))
 
-    def filled(self, point: SweepPoint) -> Ruler:
-        """Return the ruler with one more point."""
+    def filled(self, point: SweepPoint, *, over: bool = True) -> Ruler:
+        """Return the ruler with one more point; one that is there already is replaced only where `over` says so."""
         place = int(np.argmin(np.abs(np.log(np.array(self.grid) / point.resolution))))
+        if self.done or (self.points[place] is not None and not over):
+            return self
         points = (*self.points[:place], RulerPoint.of(point), *self.points[place + 1 :])
         return replace(self, points=points, version=self.version + 1)
 

@@ -10,15 +10,15 @@ import webbrowser
 from pathlib import Path
 from typing import Any
 
-from dash import Dash
+from dash import Dash, set_props
 from flask import Flask
 
 from analysis.compute import Compute
-from analysis.errors import SettingError
+from analysis.errors import CorymbError, SettingError
 from app.desk import Desk
 from app.frame import layout
 from app.guards import install_guards
-from app.jobs import Jobs
+from app.jobs import FAULT, Jobs
 from app.places import assets_folder
 from app.routes import install_routes
 from app.wiring import wire
@@ -50,12 +50,20 @@ def create_app(desk: Desk, *, port: int | None = None) -> Dash:
         serve_locally=True,
         suppress_callback_exceptions=True,
         compress=False,
+        on_error=_tell_fault,
     )
     app.layout = layout(app.get_asset_url("corymb.svg"))
     install_routes(server, desk)
     wire(app, desk)
     install_guards(server, port=port, script_hashes=app.csp_hashes)
     return app
+
+
+def _tell_fault(error: Exception) -> None:
+    """Show an error beside the thing that caused it; one that is a fault of ours goes to the log, whole."""
+    if not isinstance(error, CorymbError):
+        logger.error("a fault in a callback", exc_info=error)
+    set_props("fault", {"data": str(error) if isinstance(error, CorymbError) else FAULT})
 
 
 def serve(

@@ -7,7 +7,7 @@ from dataclasses import dataclass
 from typing import Any
 
 from analysis.network import Network
-from analysis.study import Study
+from analysis.study import NullDraws, Study
 from app.desk import Desk
 
 
@@ -27,6 +27,8 @@ class View:
     study_id : str or None
     fault : str
         Message of the last error; empty for none.
+    draws : NullDraws or None
+        What has come of the null networks of a study on its way.
     """
 
     desk: Desk
@@ -35,6 +37,7 @@ class View:
     study: Study | None
     study_id: str | None
     fault: str = ""
+    draws: NullDraws | None = None
 
     @property
     def network(self) -> Network | None:

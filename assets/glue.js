@@ -12,7 +12,6 @@
     loaded: Promise.resolve(),
     sizeCut: 5,
     shown: null, // decoded colours of the study shown
-    shownId: null,
     names: {},
     ruler: null, // last data of the ruler
     wanted: null,
@@ -94,6 +93,12 @@
     return { module, genes };
   }
 
+  /** Colours by the partition that the map was drawn from, until anything else is ready. */
+  async function paintAnchor(url) {
+    const decoded = await colours(`${url}/anchor`);
+    if (decoded && state.network === url && !state.painted) paint(decoded, {});
+  }
+
   function describe(decoded, resolution) {
     if (resolution !== null) text("state-resolution", resolution < 10 ? resolution.toPrecision(2) : resolution.toFixed(0));
     const large = decoded.sizes.reduce((count, size) => count + (size >= state.sizeCut ? 1 : 0), 0);
@@ -148,14 +153,14 @@
       state.network = order.url;
       state.cache.clear();
       state.shown = null;
-      state.shownId = null;
+      state.painted = null;
       state.ruler = null;
       state.loaded = Promise.all([
         window.corymb.map.load({ url: order.url, names: null, label: order.label }),
         fetch(`${order.url}/degrees`)
           .then((answer) => answer.arrayBuffer())
           .then((buffer) => (state.degrees = new Uint32Array(buffer))),
-      ]);
+      ]).then(() => paintAnchor(order.url));
       return noUpdate();
     },
 
@@ -171,7 +176,6 @@
       if (!decoded || state.network !== order.url) return noUpdate();
       state.previews += 1;
       state.shown = decoded;
-      state.shownId = shown.study;
       state.names = names;
       if (!state.dragging) {
         paint(decoded, names);

@@ -147,9 +147,13 @@ def _most_common(keys: NDArray[np.int64], pairs: int, modules: int) -> tuple[NDA
 
 
 def standing(confidence: NDArray[Any], homes: NDArray[Any]) -> list[str]:
-    """Return `core` (in nearly all runs), `rim` (in most) or `shared` (at home in several modules) for each pair."""
+    """Return `core` (in nearly all runs), `rim` (in most) or `shared` (at home in several modules) for each pair.
+
+    A gene that is in its module in less than half of the runs counts as shared; where no runs say anything, it is empty.
+    """
     words = np.where(confidence >= CORE_SHARE, "core", np.where(confidence >= RIM_SHARE, "rim", "shared"))
-    return [str(word) for word in np.where(homes > 1, "shared", words)]
+    words = np.where(homes > 1, "shared", words)
+    return [str(word) for word in np.where(np.isnan(confidence), "", words)]
 
 
 def consensus(network: Network, runs: Sequence[NDArray[Any]], method: Optimiser, seed: int) -> Modules:

@@ -8,11 +8,11 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from analysis.compute import Compute
+from analysis.compute import Compute, InProcess
 from analysis.errors import SettingError
 from analysis.methods import Leiden
 from analysis.methods.randomness import child_seeds
-from analysis.network import FloatArray, Network
+from analysis.network import FloatArray, IntArray, Network
 from analysis.progress import Progress, portion, silent
 from analysis.trust.chains import ChainTask, resolution_grid
 from analysis.trust.envelope import Domain
@@ -151,14 +151,37 @@ class Sweep:
         return table
 
 
-def preview_points(network: Network, quality: str, grid: FloatArray, seed: int = 1) -> Iterator[SweepPoint]:
+@dataclass(frozen=True)
+class PreviewTask:
+    """Task: one cold run of two passes; returns labels, shape (nodes,)."""
+
+    quality: str
+    resolution: float
+    seed: int
+
+    def run(self, network: Network) -> IntArray:
+        """Run it."""
+        return Leiden(self.quality, self.resolution, 2).labels(network, seed=self.seed)
+
+
+def preview_points(
+    network: Network,
+    quality: str,
+    grid: FloatArray,
+    *,
+    seed: int = 1,
+    compute: Compute | None = None,
+    progress: Progress = silent,
+) -> Iterator[SweepPoint]:
     """Yield points from the coarse end by cold runs of two passes, to be shown until the sweep replaces them.
 
     They say how many modules there are, not how steady they are: the figures of agreement are NaN.
     """
-    for resolution, child in zip(grid.tolist(), child_seeds(seed, len(grid), purpose=_PREVIEW), strict=True):
-        labels = Leiden(quality, resolution, 2).labels(network, seed=child)
-        yield bare_point(network, quality, resolution, labels)
+    seeds = child_seeds(seed, len(grid), purpose=_PREVIEW)
+    tasks = [PreviewTask(quality, at, child) for at, child in zip(grid.tolist(), seeds, strict=True)]
+    stream = (compute or InProcess()).stream(network, tasks, progress=progress, phrase="a first look at resolutions")
+    for position, labels in stream:
+        yield bare_point(network, quality, tasks[position].resolution, labels)
 
 
 def sweep_tasks(network: Network, settings: SweepSettings) -> list[ChainTask]:

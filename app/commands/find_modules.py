@@ -10,7 +10,7 @@ from app.commands.arguments import add_compute, add_network, add_out, add_quiet,
 from app.terminal import Terminal
 
 if TYPE_CHECKING:
-    from analysis.study import Study, StudySettings
+    from analysis.study import StudySettings
     from app.pipeline import Input
 
 NAME = "modules"
@@ -66,7 +66,7 @@ def run(arguments: Namespace, terminal: Terminal) -> int:
     given = read_input(arguments.network, settings.weight, settings.min_weight)
     study = study_into(given, settings, arguments.out, arguments.compute, progress)
     if not arguments.quiet:
-        for sentence in (*reading_sentences(given), *study_sentences(study)):
+        for sentence in (*reading_sentences(given), *study.sentences):
             terminal.say(sentence)
         terminal.say(f"Written to {arguments.out}; begin with {arguments.out / 'report.html'}.")
     return 0
@@ -131,11 +131,6 @@ def reading_sentences(given: Input) -> list[str]:
             f"{left_out:,} of {given.report.edges:,} edges have a weight below {given.min_weight:g} and were left out."
         )
     return sentences
-
-
-def study_sentences(study: Study) -> tuple[str, ...]:
-    """Return the verdict on the whole."""
-    return study.sentences
 
 
 def resolution(text: str) -> float | str:

@@ -102,6 +102,7 @@ def _settings(view: View) -> list[Any]:
         heading("How they are found"),
         html.Div(controls, className="fields"),
         html.P(METHOD_SENTENCES[wanted["method"]], className="hint"),
+        *([html.P(QUESTIONS[wanted["quality"]].sentence, className="hint")] if wanted["method"] == "leiden" else []),
     ]
 
 

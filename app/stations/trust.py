@@ -35,7 +35,7 @@ def render(view: View) -> Pane:
     body: list[Any] = [
         *sentences(study.sentences),
         *_noise_figure(view),
-        *_chance_figure(study),
+        *_chance_figure(view, study),
         *_strip(study),
         *_doubtful(study),
         notice(CLUSTERED_CAUTION),
@@ -68,11 +68,12 @@ def _noise_figure(view: View) -> list[Any]:
     return [heading("Under noise"), sentence(curve.sentence()), figure(noise_figure(curve), words)]
 
 
-def _chance_figure(study: Study) -> list[Any]:
-    if study.nulls is None:
+def _chance_figure(view: View, study: Study) -> list[Any]:
+    nulls = study.nulls or view.draws
+    if nulls is None or not len(nulls.draws):
         return []
-    words = f"Modularity of {len(study.nulls.draws)} random networks with the same degrees, clustered likewise"
-    return [heading("Against chance"), figure(null_chart(study.nulls), f"{words}; the line is this network.")]
+    words = f"Modularity of {len(nulls.draws)} random networks with the same degrees, clustered likewise"
+    return [heading("Against chance"), figure(null_chart(nulls), f"{words}; the line is this network.")]
 
 
 def _strip(study: Study) -> list[Any]:

@@ -52,6 +52,7 @@ def wire(app: Dash, desk: Desk) -> None:
             "method": method or wanted["method"],
             "seed": wanted["seed"] if seed is None else int(seed),
         }
+        changed["effort"] = "quick"
         if changed["method"] == "louvain" and changed["quality"] != "modularity":
             changed |= {"quality": "modularity", "resolution": 1.0}
         return no_update if changed == wanted else changed
@@ -72,7 +73,18 @@ def wire(app: Dash, desk: Desk) -> None:
         prevent_initial_call=True,
     )
     def change_keep(keep: str | None, wanted: dict[str, Any]) -> Any:
-        return no_update if keep is None or keep == wanted.get("keep") else {**wanted, "keep": keep}
+        return no_update if keep is None or keep == wanted.get("keep") else {**wanted, "keep": keep, "effort": "quick"}
+
+    @app.callback(
+        Output("wanted", "data", allow_duplicate=True),
+        Input("shown", "data"),
+        State("wanted", "data"),
+        prevent_initial_call=True,
+    )
+    def harvest_in_full(shown: Any, wanted: Any) -> Any:
+        """Once the quick harvest is on the screen, do the full one in the background."""
+        quick = wanted and wanted["method"] == HARVEST and wanted.get("effort") == "quick"
+        return {**wanted, "effort": "full"} if quick and shown and shown["method"] == HARVEST else no_update
 
     @app.callback(
         Output("wanted", "data", allow_duplicate=True),
@@ -130,4 +142,5 @@ def settings_of(wanted: dict[str, Any]) -> StudySettings:
         nulls=HARVEST_NULLS if wanted["method"] == HARVEST else wanted["nulls"],
         show=wanted.get("show", "best"),
         keep=wanted.get("keep", "supported"),
+        effort=wanted.get("effort", "quick"),
     )

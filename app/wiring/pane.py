@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from typing import Any
 
 from dash import ALL, Dash, Input, Output, State, ctx, html, no_update
@@ -52,6 +53,7 @@ def wire(app: Dash, desk: Desk) -> None:
         Input("map-order", "data"),
         Input("trust-seen", "data"),
         State("wanted", "data"),
+        State("pending", "data"),
     )
     def fill(
         station: str,
@@ -63,8 +65,11 @@ def wire(app: Dash, desk: Desk) -> None:
         _map: Any,
         _trust: Any,
         wanted: Any,
+        pending: Any,
     ) -> Any:
-        view = _view(desk, fingerprint, shown, wanted, message)
+        view = replace(
+            _view(desk, fingerprint, shown, wanted, message), draws=desk.draws(pending["study"] if pending else None)
+        )
         place = station if station in STATIONS else START
         pane = _picked(view, pick) or STATIONS[place].render(view)
         targets = [each["id"]["station"] for each in ctx.outputs_list[3]]

@@ -15,6 +15,7 @@ from app.wiring.triggers import pressed
 SHOW_AFTER_SECONDS = 0.5
 WORDS = {
     "drawing": "drawing the map",
+    "preview": "a first look at resolutions",
     "sweep": "sweep over resolutions",
     "study": "modules and their evidence",
     "packing": "writing the files",
@@ -41,7 +42,7 @@ def wire(app: Dash, desk: Desk) -> None:
     )
     def look(_ticks: Any, pending: Any, shown: Any, ruler: Any, asked: Any, saved: Any) -> Any:
         running = desk.jobs.running()
-        bars = [_bar(job) for job in running if job.elapsed >= SHOW_AFTER_SECONDS]
+        bars = [_bar(job) for job in running if job.elapsed >= SHOW_AFTER_SECONDS and job.kind != "preview"]
         message = _failure(desk, pending) or _failure(desk, asked)
         order = _save_order(desk, asked, saved)
         return (

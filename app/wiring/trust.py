@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from typing import Any
 
+import numpy as np
 from dash import ALL, Dash, Input, Output, State, ctx, no_update
 
 from analysis.evidence import HARVEST
@@ -12,6 +13,7 @@ from app.stations import trust
 from app.wiring.triggers import pressed
 
 NULLS = 100
+DRAWS_AT_A_TIME = 10
 
 
 def wire(app: Dash, desk: Desk) -> None:
@@ -59,15 +61,15 @@ def wire(app: Dash, desk: Desk) -> None:
         State("station", "data"),
         State("shown", "data"),
         State("trust-seen", "data"),
+        State("pending", "data"),
         prevent_initial_call=True,
     )
-    def watch_curve(_ticks: Any, station: str, shown: Any, seen: Any) -> Any:
+    def watch(_ticks: Any, station: str, shown: Any, seen: Any, pending: Any) -> Any:
         if not shown or station != trust.KEY:
             return no_update
-        curve = desk.curve(shown["study"])
-        if curve is None:
-            return no_update
-        now = [shown["study"], int((curve.vi == curve.vi).sum() + (curve.null_vi == curve.null_vi).sum())]
+        curve, draws = desk.curve(shown["study"]), desk.draws(pending["study"] if pending else None)
+        points = 0 if curve is None else int(np.isfinite(curve.vi).sum() + np.isfinite(curve.null_vi).sum())
+        now = [shown["study"], points, 0 if draws is None else len(draws.draws) // DRAWS_AT_A_TIME]
         return no_update if now == seen else now
 
 
