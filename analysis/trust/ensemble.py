@@ -149,7 +149,8 @@ def _most_common(keys: NDArray[np.int64], pairs: int, modules: int) -> tuple[NDA
 def standing(confidence: NDArray[Any], homes: NDArray[Any]) -> list[str]:
     """Return `core` (in nearly all runs), `rim` (in most) or `shared` (at home in several modules) for each pair.
 
-    A gene that is in its module in less than half of the runs counts as shared; where no runs say anything, it is empty.
+    A gene that is in its module in less than half of the runs counts as shared; where no runs say anything, the word
+    is empty.
     """
     words = np.where(confidence >= CORE_SHARE, "core", np.where(confidence >= RIM_SHARE, "rim", "shared"))
     words = np.where(homes > 1, "shared", words)

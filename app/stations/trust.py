@@ -48,7 +48,7 @@ def _actions(view: View, study: Study) -> list[Any]:
     if study.settings.method == HARVEST:
         return []
     actions = []
-    if study.nulls is None:
+    if study.nulls is None and not view.wanted["nulls"]:
         actions.append(
             button("Compare with chance", {"type": "compare-with-chance", "index": 0}, kind="button primary")
         )
