@@ -14,7 +14,8 @@ from app.map.colours import GREY, PALETTE
 NODES_SHOWN = 400
 NEIGHBOURS_SHOWN = 120
 EDGES_SHOWN = 2500
-SPREAD = 34.0
+SPREAD = 30.0
+RING = 52.0
 
 STYLESHEET: list[dict[str, Any]] = [
     {
@@ -91,7 +92,10 @@ def _elements(
     centre: int | None,
 ) -> list[dict[str, Any]]:
     labels = modules.labels
-    place = _drawn_in(positions[chosen], np.array([node in inside for node in chosen.tolist()])) * SPREAD
+    if centre is None:
+        place = _drawn_in(positions[chosen], np.array([node in inside for node in chosen.tolist()]))
+    else:
+        place = _around(positions[chosen], labels[chosen], int(np.flatnonzero(chosen == centre)[0]))
     nodes = []
     for node, (x, y) in zip(chosen.tolist(), place.tolist(), strict=True):
         label = int(labels[node])
@@ -111,8 +115,27 @@ def _drawn_in(points: FloatArray, inside: NDArray[np.bool_]) -> FloatArray:
     offset = points - middle
     distance = np.hypot(*offset.T)
     wanted = np.where(distance > reach, reach * (1.1 + 0.35 * np.log(np.maximum(distance, reach) / reach)), distance)
-    drawn: FloatArray = offset * (wanted / np.maximum(distance, 1e-9))[:, None]
-    return drawn
+    drawn = offset * (wanted / np.maximum(distance, 1e-9))[:, None]
+    wide = SPREAD * np.sqrt(len(points)) / max(float(wanted.max()), 1e-9)
+    scaled: FloatArray = drawn * wide
+    return scaled
+
+
+def _around(points: FloatArray, labels: NDArray[Any], centre: int) -> FloatArray:
+    """Place a gene's partners evenly around it, three deep, those of one module side by side."""
+    others = np.flatnonzero(np.arange(len(points)) != centre)
+    offset = points - points[centre]
+    middles = {
+        label: offset[others][labels[others] == label].mean(axis=0) for label in np.unique(labels[others]).tolist()
+    }
+    of_module = [float(np.arctan2(*middles[label][::-1])) for label in labels[others].tolist()]
+    own = np.arctan2(offset[others, 1], offset[others, 0])
+    order = others[np.lexsort((own, labels[others], np.array(of_module)))]
+    turn = 2 * np.pi * np.arange(len(order)) / max(len(order), 1)
+    reach = max(90.0, 3.4 * len(order)) + RING * (np.arange(len(order)) % 3 if len(order) > 12 else 0)
+    placed: FloatArray = np.zeros((len(points), 2))
+    placed[order] = np.column_stack([reach * np.cos(turn), reach * np.sin(turn)])
+    return placed
 
 
 def _edges(network: Network, chosen: NDArray[Any], inside: set[int]) -> list[dict[str, Any]]:
