@@ -117,6 +117,14 @@ def test_every_method_gives_a_whole_page(settings):
     assert tree.find("body/main") is not None
 
 
+def test_very_many_single_genes_are_counted_and_not_listed():
+    bundle = bundle_of(karate_text(), resolution=1000.0)
+    assert len(bundle.study.modules) == 34
+    tree = _tree(_page(bundle))
+    assert "34 modules of a single gene each are in modules.csv" in _text(tree)
+    assert tree.findall(".//details[@class='module']") == []
+
+
 def test_the_map_has_every_gene_and_edge(karate):
     tree = _tree(_page(karate))
     figure = tree.find(".//figure[@class='map']")

@@ -14,6 +14,7 @@ from analysis.study import Study
 
 ROWS_OPEN = 25
 LEAST_SURE = 12
+MOST_SINGLES = 20
 LIMIT_MARK = "*"
 
 _HEADS = {
@@ -46,13 +47,23 @@ def module_tables(study: Study) -> Markup:
     head = tag("thead", tag("tr", tag("th", "module", scope="col"), cells))
     if not has_limit(study):
         table = table.assign(below_resolution_limit=False)
-    records = enumerate(table.to_dict("records"))
+    told = _told(study)
+    records = enumerate(table.head(told).to_dict("records"))
     rows = [_row(position, record, shown, study.copies) for position, record in records]
     parts = [_wide(head, rows[:ROWS_OPEN])]
     if rest := rows[ROWS_OPEN:]:
         summary = f"The other {count(len(rest), 'module')}, M{ROWS_OPEN + 1} to M{len(rows)}"
         parts.append(tag("details", tag("summary", summary), _wide(head, rest)))
+    if single := len(table) - told:
+        text = f"{count(single, 'module')} of a single gene each are in modules.csv and membership.csv alone."
+        parts.append(tag("p", text, class_="note"))
     return join(parts)
+
+
+def _told(study: Study) -> int:
+    """Return how many modules the report tells of: all, but for single genes where there are very many."""
+    single = int((study.modules.sizes == 1).sum())
+    return len(study.modules) - (single if single > MOST_SINGLES else 0)
 
 
 def has_limit(study: Study) -> bool:
@@ -88,9 +99,12 @@ def least_sure(study: Study) -> Markup | None:
     return join([tag("p", note), _wide(head, rows)])
 
 
-def gene_lists(study: Study) -> Markup:
-    """Return the genes of every module, folded; doubtful ones in ochre."""
-    table = study.membership
+def gene_lists(study: Study) -> Markup | None:
+    """Return the genes of every module that the table tells of, folded; doubtful ones in ochre."""
+    numbers = study.modules.numbers[: _told(study)]
+    table = study.membership[study.membership["module"].isin(numbers)]
+    if table.empty:
+        return None
     starts = np.flatnonzero((table["module"] != table["module"].shift()).to_numpy())
     genes, confidence, modules = (table[name].tolist() for name in ("gene", "confidence", "module"))
     names = study.settings.names

@@ -5,13 +5,14 @@ from __future__ import annotations
 import math
 from typing import Any
 
+from analysis.intake.wording import counted
+
 MISSING = "–"
 
 
-def count(value: float, noun: str = "", plural: str | None = None) -> str:
+def count(value: float, noun: str = "") -> str:
     """Return `1 gene`, `12,000 genes`, or the bare number."""
-    written = f"{int(value):,}"
-    return f"{written} {noun if value == 1 else plural or noun + 's'}" if noun else written
+    return counted(int(value), noun) if noun else f"{int(value):,}"
 
 
 def figure(value: Any, decimals: int = 2) -> str:
