@@ -159,8 +159,9 @@ def _ring(positions: FloatArray, groups: list[NDArray[np.intp]], radius: float) 
     for group in groups:
         reach = _radius(positions[group]) + GAP / 2
         if len(group) < SMALLEST_MODULE:
-            positions[group] = 0.5 * SPACING * np.array([[1.0, 0.0], [-1.0, 0.0]])[: len(group)]
-            reach = GAP / 2
+            apart = 0.5 * SPACING * (len(group) - 1)  # a pair lies side by side, a single node in the middle
+            positions[group] = apart * np.array([[1.0, 0.0], [-1.0, 0.0]])[: len(group)]
+            reach = apart + GAP / 2
         step = 2 * math.asin(min(1.0, reach / (radius + reach)))
         if angle + step > 2 * math.pi:
             radius, angle, widest = radius + 2 * widest, 0.0, 0.0
