@@ -29,6 +29,7 @@ _STUDY: Kinds = {
     "nulls": (int,),
     "show": (str,),
     "keep": (str,),
+    "effort": (str,),
     **_TAKEN,
 }
 _SWEEP: Kinds = {

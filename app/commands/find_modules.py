@@ -25,6 +25,7 @@ BELONGS_TO = {
     "quality": ("leiden", "louvain"),
     "show": ("leiden", "louvain"),
     "keep": ("harvest",),
+    "effort": ("harvest",),
 }
 """Methods to which an option belongs."""
 
@@ -50,6 +51,7 @@ def add_arguments(parser: ArgumentParser) -> None:
     parser.add_argument(
         "--keep", metavar="supported|all", help="for harvest: down to where chance begins, or all; default: supported"
     )
+    parser.add_argument("--effort", metavar="quick|full", help="for harvest: some 290 runs or some 740; default: quick")
     add_weights(parser)
     add_compute(parser)
     add_quiet(parser)
@@ -94,6 +96,7 @@ def settings_from(arguments: Namespace) -> StudySettings:
         "nulls",
         "show",
         "keep",
+        "effort",
         "weight",
         "min_weight",
     )
