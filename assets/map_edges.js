@@ -7,6 +7,8 @@
 
   /** Edges shorter than this share of the network's extent are drawn at full strength. */
   const NEAR = 0.055;
+  /** A bitmap made for a closer view than twice this one would show as a dark patch. */
+  const COARSEST = 0.5;
 
   /** @returns {Worker} made from text, which a policy of `worker-src 'self' blob:` allows */
   function makeWorker() {
@@ -126,11 +128,17 @@
       return this.busy || this.wanted !== null;
     }
 
-    /** Draws the sharpest bitmap that covers the view. */
+    /** Draws the sharp bitmap where it reaches, and around it the one of the whole network. */
     draw(canvas, view) {
       const context = parts.view.prepare(canvas, view);
-      const picture = this.local && covers(this.local.view, view) ? this.local : this.whole || this.local;
-      if (picture) place(context, picture, view);
+      const sharp = this.local && view.scale / this.local.view.scale > COARSEST ? this.local : null;
+      if (this.whole && this.whole !== sharp) {
+        context.save();
+        if (sharp) clipAround(context, sharp, view);
+        place(context, this.whole, view);
+        context.restore();
+      }
+      if (sharp) place(context, sharp, view);
     }
   }
 
@@ -152,10 +160,14 @@
       && left + bounds.width * view.scale <= view.width && top + bounds.height * view.scale <= view.height;
   }
 
-  function covers(made, now) {
-    const box = boxIn(made, now);
-    return box.left <= 0.5 && box.top <= 0.5
-      && box.left + box.width >= now.width - 0.5 && box.top + box.height >= now.height - 0.5;
+  /** Lets only be drawn what lies outside a picture's box. */
+  function clipAround(context, picture, view) {
+    const box = boxIn(picture.view, view);
+    const { ratio } = view;
+    context.beginPath();
+    context.rect(0, 0, view.width * ratio, view.height * ratio);
+    context.rect(box.left * ratio, box.top * ratio, box.width * ratio, box.height * ratio);
+    context.clip("evenodd");
   }
 
   function place(context, picture, view) {

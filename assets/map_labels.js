@@ -6,7 +6,7 @@
 
   const MOST_NAMES = 48;
   const NAMES_FROM_ZOOM = 1.9;
-  const FEW = 1500;              // up to so many nodes, plates make way for discs
+  const FEW = 2500;              // up to so many nodes, plates make way for discs
   const PLACES = [[0, 0], [0, -0.8], [0, 0.8], [-0.9, 0], [0.9, 0], [0, -1.6], [0, 1.6]];   // in heights of a plate
   const widths = new Map();
 

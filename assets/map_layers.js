@@ -5,6 +5,8 @@
   const parts = (corymb.mapParts = corymb.mapParts || {});
 
   const NAMES = ["edges", "shading", "nodes", "labels"];
+  const QUICK = 30;              // ms for all layers, up to which they are drawn in the middle of a gesture …
+  const BETWEEN = 160;           // … but not more often than this
 
   class Layers {
     /**
@@ -17,6 +19,7 @@
       this.scene = scene;
       this.stale = new Set();
       this.frame = 0;
+      this.lastView = 0;
       this.stats = { nodeDraws: 0, shadingDraws: 0, shadingMs: 0, nodeMs: 0, labelMs: 0, redrawMs: 0 };
       this.build();
       this.edges = edges;
@@ -58,7 +61,7 @@
       return parts.view.view(this.base, this.transform, this.width, this.height, ratio);
     }
 
-    /** Moves the layers as they are, without drawing. */
+    /** Moves the layers as they are; draws in between only where that is quick, so that no paper shows for long. */
     move(transform) {
       this.transform = transform;
       const now = this.viewNow();
@@ -66,6 +69,8 @@
       const x = now.left - this.drawn.left * factor;
       const y = now.top - this.drawn.top * factor;
       this.box.style.transform = `translate(${x}px, ${y}px) scale(${factor})`;
+      const quick = this.stats.redrawMs < QUICK && !this.edges.busy;
+      if (quick && performance.now() - this.lastView > BETWEEN) this.ask("view");
     }
 
     /**
@@ -87,6 +92,7 @@
       const view = stale.has("view");
       if (view) {
         this.drawn = this.viewNow();
+        this.lastView = start;
         this.box.style.transform = "";
         this.paintEdges();
         this.edges.request(this.drawn, this.theme);

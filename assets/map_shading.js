@@ -8,6 +8,8 @@
   const CELLS = 400;             // along the longer side
   const NOBODY = 0xffff;
   const REACH = 1.6;             // of a node, in typical distances between nodes
+  const BLOCK = 22;              // cells; about the width of a number's plate
+  const WELL_INSIDE = 150;       // strength
   const MOST_WORK = 1.7e6;        // cells touched by all nodes together: some ten milliseconds
   const FADES_FROM = 0.1;        // density, in units of one node at its own place
   const FULL_FROM = 0.5;
@@ -120,44 +122,95 @@
       if (value <= FADES_FROM) continue;
       strength[place] = 255 * smooth(value, FADES_FROM, FULL_FROM) * smooth(value / total[place], DISPUTED, UNDISPUTED);
     }
-    return { grid, owner, strength, centres: findCentres(grid, owner, strength, best, modules) };
+    return { grid, owner, strength, centres: findCentres(grid, owner, strength, modules) };
   }
 
-  /**
-   * Per module: where its number is written (the middle of its area, or its densest cell where the middle belongs to
-   * another) and the size of its area, in units of the plane.
-   */
-  function findCentres(grid, owner, strength, best, modules) {
+  /** Per module: sums of weight times column, weight times row, weight, over the cells that it owns. */
+  function sumUp(grid, owner, strength, modules) {
     const sums = new Float64Array(3 * modules);
-    const densest = new Int32Array(modules).fill(-1);
     for (let row = 0, place = 0; row < grid.rows; row += 1) {
       for (let column = 0; column < grid.columns; column += 1, place += 1) {
         const weight = strength[place];
         if (weight === 0) continue;
-        const module = owner[place];
-        sums[3 * module] += weight * column;
-        sums[3 * module + 1] += weight * row;
-        sums[3 * module + 2] += weight;
-        if (densest[module] < 0 || best[place] > best[densest[module]]) densest[module] = place;
+        const at = 3 * owner[place];
+        sums[at] += weight * column;
+        sums[at + 1] += weight * row;
+        sums[at + 2] += weight;
       }
     }
-    return Array.from({ length: modules }, (_, module) => {
-      const weight = sums[3 * module + 2];
-      if (weight === 0) return null;
-      let column = sums[3 * module] / weight;
-      let row = sums[3 * module + 1] / weight;
-      const middle = Math.round(row) * grid.columns + Math.round(column);
-      if (owner[middle] !== module || strength[middle] < 60) {
-        column = densest[module] % grid.columns;
-        row = Math.floor(densest[module] / grid.columns);
-      }
-      return {
-        module,
-        x: grid.left + column * grid.cell,
-        y: grid.top + row * grid.cell,
-        area: (weight / 255) * grid.cell * grid.cell,
-      };
+    return sums;
+  }
+
+  /** The block of cells in which a module owns most; one pass for all modules that ask. */
+  function heaviestBlocks(grid, owner, strength, wanted) {
+    const across = Math.ceil(grid.columns / BLOCK);
+    const sums = new Map([...wanted].map((module) => [module, new Uint32Array(across * Math.ceil(grid.rows / BLOCK))]));
+    for (let place = 0; place < owner.length; place += 1) {
+      const blocks = strength[place] > 0 ? sums.get(owner[place]) : undefined;
+      if (!blocks) continue;
+      const row = Math.floor(place / grid.columns);
+      blocks[Math.floor(row / BLOCK) * across + Math.floor((place - row * grid.columns) / BLOCK)] += strength[place];
+    }
+    const middles = new Map();
+    sums.forEach((blocks, module) => {
+      const heaviest = blocks.reduce((best, sum, block) => (sum > blocks[best] ? block : best), 0);
+      middles.set(module, [(heaviest % across + 0.5) * BLOCK, (Math.floor(heaviest / across) + 0.5) * BLOCK]);
     });
+    return middles;
+  }
+
+  /** Moves a few times to the middle of what the module owns nearby. */
+  function settle(grid, owner, strength, module, [startColumn, startRow]) {
+    let column = startColumn;
+    let row = startRow;
+    for (let turn = 0; turn < 4; turn += 1) {
+      let weights = 0, columns = 0, rows = 0;
+      const left = Math.max(0, Math.round(column) - BLOCK), right = Math.min(grid.columns - 1, left + 2 * BLOCK);
+      const top = Math.max(0, Math.round(row) - BLOCK), bottom = Math.min(grid.rows - 1, top + 2 * BLOCK);
+      for (let y = top; y <= bottom; y += 1) {
+        for (let x = left; x <= right; x += 1) {
+          const place = y * grid.columns + x;
+          if (owner[place] !== module || strength[place] === 0) continue;
+          weights += strength[place];
+          columns += strength[place] * x;
+          rows += strength[place] * y;
+        }
+      }
+      if (weights === 0) break;
+      column = columns / weights;
+      row = rows / weights;
+    }
+    return [column, row];
+  }
+
+  /**
+   * Per module: where its number is written and the size of its area, in units of the plane. The number stands in the
+   * middle of the area or, where that middle belongs to another or to nobody, on the module's largest island.
+   */
+  function findCentres(grid, owner, strength, modules) {
+    const sums = sumUp(grid, owner, strength, modules);
+    const middles = new Map();
+    const astray = new Set();
+    for (let module = 0; module < modules; module += 1) {
+      const weight = sums[3 * module + 2];
+      if (weight === 0) continue;
+      const column = sums[3 * module] / weight;
+      const row = sums[3 * module + 1] / weight;
+      const place = Math.round(row) * grid.columns + Math.round(column);
+      middles.set(module, [column, row]);
+      if (owner[place] !== module || strength[place] < WELL_INSIDE) astray.add(module);
+    }
+    if (astray.size > 0) {
+      heaviestBlocks(grid, owner, strength, astray).forEach((block, module) => {
+        middles.set(module, settle(grid, owner, strength, module, block));
+      });
+    }
+    return Array.from({ length: modules }, (_, module) => middles.has(module) ? {
+      module,
+      x: grid.left + middles.get(module)[0] * grid.cell,
+      y: grid.top + middles.get(module)[1] * grid.cell,
+      area: (sums[3 * module + 2] / 255) * grid.cell * grid.cell,
+    } : null);
   }
 
   /**
