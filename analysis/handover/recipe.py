@@ -8,7 +8,7 @@ from typing import Any
 
 from analysis.errors import InputError, SettingError
 from analysis.handover.bundle import Bundle, Source, SweepBundle
-from analysis.handover.recipe_parts import Kinds, parse_toml, refuse_unknown, table_of, texts_of, values_of
+from analysis.handover.recipe_parts import Kinds, kinds_of, parse_toml, refuse_unknown, table_of, texts_of, values_of
 from analysis.network import Network
 from analysis.study import SUGGEST, StudySettings
 from analysis.trust.sweep import SweepSettings
@@ -18,31 +18,7 @@ MODULES, SWEEP = "modules", "sweep"
 
 _NETWORK = ("file", "sha256", "fingerprint")
 _TAKEN: Kinds = {"weight": (str,), "min_weight": (float, int)}
-_STUDY: Kinds = {
-    "method": (str,),
-    "quality": (str,),
-    "resolution": (float, int, str),
-    "k": (int,),
-    "seed": (int,),
-    "runs": (int,),
-    "noise": (float, int),
-    "nulls": (int,),
-    "show": (str,),
-    "keep": (str,),
-    "effort": (str,),
-    **_TAKEN,
-}
-_SWEEP: Kinds = {
-    "quality": (str,),
-    "low": (float, int),
-    "high": (float, int),
-    "steps": (int,),
-    "runs": (int,),
-    "seed": (int,),
-    "noise": (float, int),
-    "noisy_runs": (int,),
-    **_TAKEN,
-}
+"""How the network was taken from its file; not a setting of the sweep itself."""
 
 
 @dataclass(frozen=True)
@@ -141,9 +117,11 @@ def read_recipe(text: str, where: str = "recipe.toml") -> Recipe:
 
 
 def _study(content: Mapping[str, Any], where: str, writer: str) -> tuple[StudySettings, dict[str, Any]]:
-    values = values_of(content, where, _STUDY, _TAKEN, writer)
-    if isinstance(values["resolution"], str) and values["resolution"] != SUGGEST:
-        raise InputError(where, f"resolution is {values['resolution']!r}", f'give a number, or "{SUGGEST}"')
+    kinds, optional = kinds_of(StudySettings, leave_out=("names",))
+    values = values_of(content, where, kinds, optional, writer)
+    resolution = values.get("resolution")
+    if isinstance(resolution, str) and resolution != SUGGEST:
+        raise InputError(where, f"resolution is {resolution!r}", f'give a number, or "{SUGGEST}"')
     names = texts_of(content, "names", where) if "names" in content else {}
     return StudySettings(**values, names=names), values
 
@@ -151,6 +129,7 @@ def _study(content: Mapping[str, Any], where: str, writer: str) -> tuple[StudySe
 def _sweep(content: Mapping[str, Any], where: str, writer: str) -> tuple[SweepSettings, dict[str, Any]]:
     if "names" in content:
         refuse_unknown(where, "the recipe of a sweep", table_of(content, "names", where), (), writer)
-    values = values_of(content, where, _SWEEP, (*_TAKEN, "low", "high"), writer)
+    kinds, optional = kinds_of(SweepSettings)
+    values = values_of(content, where, {**kinds, **_TAKEN}, (*optional, *_TAKEN), writer)
     taken = {key: values.pop(key) for key in _TAKEN if key in values}
     return SweepSettings(**values), taken

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import tomllib
 from collections.abc import Iterable, Mapping
-from typing import Any
+from typing import Any, get_args, get_type_hints
 
 from analysis.errors import InputError
 from analysis.version import VERSION
@@ -14,6 +14,18 @@ Kinds = Mapping[str, tuple[type, ...]]
 
 AS_WRITTEN = "use the recipe as it was written"
 WORDS = {str: "a text", int: "a whole number", float: "a number"}
+
+
+def kinds_of(settings: type, leave_out: Iterable[str] = ()) -> tuple[dict[str, tuple[type, ...]], list[str]]:
+    """Return the types that each field of a settings class may have, and the fields that may be None."""
+    hints = {name: hint for name, hint in get_type_hints(settings).items() if name not in leave_out}
+    parts = {name: get_args(hint) or (hint,) for name, hint in hints.items()}
+    optional = [name for name, part in parts.items() if type(None) in part]
+    kinds = {
+        name: tuple(kind for kind in part if kind is not type(None)) + ((int,) if float in part else ())
+        for name, part in parts.items()
+    }
+    return kinds, optional
 
 
 def parse_toml(text: str, where: str) -> dict[str, Any]:
@@ -63,11 +75,15 @@ def texts_of(content: Mapping[str, Any], name: str, where: str) -> dict[str, str
 def values_of(
     content: Mapping[str, Any], where: str, kinds: Kinds, optional: Iterable[str], writer: str
 ) -> dict[str, Any]:
-    """Return the settings, each of one of its kinds, none missing that is not optional."""
+    """Return the settings, each of one of its kinds.
+
+    None may be missing that is not optional; but a recipe of another version may lack a setting that this one has, and
+    is repeated with its default.
+    """
     given = table_of(content, "settings", where)
     refuse_unknown(where, "[settings]", given, kinds, writer)
     missing = sorted(set(kinds) - set(given) - set(optional))
-    if missing:
+    if missing and writer == VERSION:
         raise InputError(where, f"[settings] lacks {missing[0]!r}", AS_WRITTEN)
     return {key: _value(where, key, value, kinds[key]) for key, value in given.items()}
 

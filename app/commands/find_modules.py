@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from argparse import ArgumentParser, ArgumentTypeError, Namespace
+from dataclasses import fields
 from typing import TYPE_CHECKING, Any
 
 from analysis.errors import SettingError
@@ -85,21 +86,7 @@ def settings_from(arguments: Namespace) -> StudySettings:
     from analysis.evidence import HARVEST, method_of
     from analysis.study import SUGGEST, StudySettings
 
-    keys = (
-        "method",
-        "quality",
-        "resolution",
-        "k",
-        "seed",
-        "runs",
-        "noise",
-        "nulls",
-        "show",
-        "keep",
-        "effort",
-        "weight",
-        "min_weight",
-    )
+    keys = [each.name for each in fields(StudySettings) if each.name != "names"]
     given: dict[str, Any] = {key: getattr(arguments, key) for key in keys if getattr(arguments, key) is not None}
     method = given.get("method", "leiden")
     if method != HARVEST:

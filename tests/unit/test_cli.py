@@ -179,6 +179,7 @@ def test_options_become_settings(tmp_path, options, method, settings):
         (["--method", "clique-percolation", "--quality", "cpm"], "--quality belongs to"),
         (["--method", "harvest", "--resolution", "2"], "--resolution belongs to"),
         (["--keep", "all"], "--keep belongs to harvest"),
+        (["--effort", "full"], "--effort belongs to harvest"),
         (["--show", "worst"], "--show takes best or consensus"),
         (["--method", "louvain", "--quality", "cpm"], "use --method leiden"),
         (["--method", "guess"], "choose one of leiden"),

@@ -106,6 +106,11 @@ def test_what_it_does_not_know_is_named(text, table, key, value, said):
     assert said in str(caught.value)
 
 
+def test_an_older_recipe_may_lack_a_newer_setting(text):
+    older = _changed(_changed(text, "versions", "corymb", "0.0.1"), "settings", "show", None)
+    assert read_recipe(older).settings == read_recipe(text).settings
+
+
 def test_a_key_of_another_version_points_to_that_version(text):
     newer = _changed(_changed(text, "versions", "corymb", "9.1.0"), "settings", "colour", "blue")
     with pytest.raises(InputError, match=r"written by corymb 9\.1\.0"):

@@ -28,7 +28,7 @@ METHOD_NAMES = {
 }
 QUALITY_NAMES = {"modularity": "modularity", "cpm": "constant Potts model"}
 NOT_USED = {
-    "clique-percolation": ("quality", "resolution", "runs", "show", "keep"),
+    "clique-percolation": ("quality", "resolution", "runs", "show", "keep", "effort"),
     "harvest": ("quality", "resolution", "k", "runs", "noise", "show"),
 }
 """Settings that a method does not heed."""
@@ -217,7 +217,7 @@ def _methods(bundle: Bundle) -> Markup:
 
 def _settings(bundle: Bundle) -> Markup:
     settings = bundle.study.settings.as_dict()
-    aside = {"names", *NOT_USED.get(settings["method"], ("k", "keep"))}
+    aside = {"names", *NOT_USED.get(settings["method"], ("k", "keep", "effort"))}
     rows = [
         (key.replace("_", " "), plain(value))
         for key, value in settings.items()
