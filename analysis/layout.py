@@ -22,7 +22,8 @@ LARGEST_DISC = 150
 SMALLEST_MODULE = 3
 SPACING = 1.0
 GAP = 0.9
-PACKING_STEPS = 260
+PACKING_STEPS, INNER_STEPS = 260, 90
+PASSES = 60
 
 
 def layout(network: Network, seed: int = 1, progress: Progress = silent) -> FloatArray:
@@ -59,16 +60,37 @@ def _place(network: Network, seed: int, progress: Progress, depth: int) -> Float
     if len(modules) < 2:
         return _place_nodes(network, seed)
     inner: list[FloatArray] = []
-    for position, group in enumerate(modules.members):
+    for position, (group, part) in enumerate(zip(modules.members, _parts(network, modules), strict=True)):
         progress(position / len(modules), "drawing the map")
-        part = network.subnetwork(group)
         inner.append(_place(part, seed, silent, depth + 1) if len(group) > LARGEST_DISC else _place_nodes(part, seed))
     radii = np.array([_bulk(points) + (0.2 if depth else GAP) for points in inner])
-    centres = _place_discs(network, modules, radii, seed)
+    steps = INNER_STEPS if depth else PACKING_STEPS
+    centres = _place_discs(network, modules, radii, seed, steps)
     positions = np.zeros((network.node_count, 2))
     for group, points, centre in zip(modules.members, inner, centres, strict=True):
         positions[group] = points + centre
     return positions if depth == 0 else _part_nodes(_fill_disc(positions), SPACING * 0.7)
+
+
+def _parts(network: Network, modules: Modules) -> list[Network]:
+    """Return the network inside each module, reading the edges once for all of them."""
+    labels = modules.labels
+    place = np.empty(network.node_count, np.int32)
+    for group in modules.members:
+        place[group] = np.arange(len(group))
+    own = labels[network.sources]
+    inside = np.flatnonzero(own == labels[network.targets])
+    inside = inside[np.argsort(own[inside], kind="stable")]
+    ends = np.searchsorted(own[inside], np.arange(1, len(modules)))
+    return [
+        Network(
+            tuple(network.names[node] for node in group.tolist()),
+            place[network.sources[edges]],
+            place[network.targets[edges]],
+            None if network.weights is None else network.weights[edges],
+        )
+        for group, edges in zip(modules.members, np.split(inside, ends), strict=True)
+    ]
 
 
 def _place_nodes(network: Network, seed: int) -> FloatArray:
@@ -77,7 +99,7 @@ def _place_nodes(network: Network, seed: int) -> FloatArray:
     if count == 1:
         return np.zeros((1, 2))
     with igraph_seed(seed):
-        drawn = network.igraph.layout_fruchterman_reingold(niter=120, seed=_spiral(count).tolist(), grid=False)
+        drawn = network.igraph.layout_fruchterman_reingold(niter=PASSES, seed=_spiral(count).tolist(), grid=False)
     points = np.array(drawn.coords)
     points -= points.mean(axis=0)
     return _part_nodes(_fill_disc(points), SPACING * 0.7)
@@ -96,7 +118,7 @@ def _fill_disc(points: FloatArray) -> FloatArray:
     return filled
 
 
-def _place_discs(network: Network, modules: Modules, radii: FloatArray, seed: int) -> FloatArray:
+def _place_discs(network: Network, modules: Modules, radii: FloatArray, seed: int, steps: int) -> FloatArray:
     """Place module discs by Fruchterman & Reingold on the edges between them, then push overlapping discs apart."""
     import igraph
 
@@ -117,39 +139,41 @@ def _place_discs(network: Network, modules: Modules, radii: FloatArray, seed: in
     centres -= centres.mean(axis=0)
     spread = max(float(np.hypot(centres[:, 0], centres[:, 1]).max()), 1e-9)
     centres *= 1.15 * math.sqrt(float((radii**2).sum())) / spread
-    return _pack(centres, radii)
+    return _pack(centres, radii, steps)
 
 
-def _pack(centres: FloatArray, radii: FloatArray) -> FloatArray:
+def _pack(centres: FloatArray, radii: FloatArray, steps: int) -> FloatArray:
     """Draw discs gently together, pushing overlapping ones apart, until they lie side by side; wider than high."""
-    centres = centres * np.array([1.5, 1.1])
+    x, y = centres[:, 0] * 1.5, centres[:, 1] * 1.1
     touch = radii[:, None] + radii[None, :]
-    share = radii[None, :] / touch
-    for step in range(PACKING_STEPS):
-        if step < PACKING_STEPS - 40:
-            centres = centres * np.array([0.9935, 0.9905])
-        offset = centres[:, None, :] - centres[None, :, :]
-        distance = np.sqrt((offset**2).sum(axis=2))
+    share = 0.5 * radii[None, :] / touch
+    shrink = (0.18 ** (1 / steps), 0.08 ** (1 / steps))
+    for step in range(steps):
+        if step < 0.85 * steps:
+            x, y = x * shrink[0], y * shrink[1]
+        across, down = x[:, None] - x[None, :], y[:, None] - y[None, :]
+        distance = np.sqrt(across**2 + down**2)
         np.fill_diagonal(distance, np.inf)
-        overlap = np.maximum(touch - distance, 0.0)
-        push = (overlap * share / np.maximum(distance, 1e-6))[:, :, None] * offset
-        centres = centres + 0.5 * push.sum(axis=1)
-    return centres
+        push = np.maximum(touch - distance, 0.0) * share / np.maximum(distance, 1e-6)
+        x, y = x + (push * across).sum(axis=1), y + (push * down).sum(axis=1)
+    return np.column_stack([x, y])
 
 
 def _part_nodes(points: FloatArray, least: float) -> FloatArray:
     """Move nodes that nearly coincide a little apart."""
-    if len(points) > 4 * LARGEST_DISC:
-        return points
+    from scipy.spatial import KDTree
+
     points = points + 1e-3 * _spiral(len(points))
     for _ in range(8):
-        offset = points[:, None, :] - points[None, :, :]
-        distance = np.sqrt((offset**2).sum(axis=2))
-        np.fill_diagonal(distance, np.inf)
-        lack = np.maximum(least - distance, 0.0)
-        if not lack.any():
+        close = KDTree(points).query_pairs(least, output_type="ndarray")
+        if not len(close):
             break
-        points = points + 0.5 * ((lack / np.maximum(distance, 1e-6))[:, :, None] * offset).sum(axis=1)
+        first, second = close[:, 0], close[:, 1]
+        offset = points[first] - points[second]
+        distance = np.maximum(np.hypot(offset[:, 0], offset[:, 1]), 1e-6)
+        push = (0.5 * (least - distance) / distance)[:, None] * offset
+        np.add.at(points, first, push)
+        np.subtract.at(points, second, push)
     return points
 
 
