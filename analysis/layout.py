@@ -147,9 +147,9 @@ def _pack(centres: FloatArray, radii: FloatArray, steps: int) -> FloatArray:
     x, y = centres[:, 0] * 1.5, centres[:, 1] * 1.1
     touch = radii[:, None] + radii[None, :]
     share = 0.5 * radii[None, :] / touch
-    shrink = (0.18 ** (1 / steps), 0.08 ** (1 / steps))
+    shrink = (0.45 ** (1 / steps), 0.5 ** (1 / steps))
     for step in range(steps):
-        if step < 0.85 * steps:
+        if step < 0.7 * steps:
             x, y = x * shrink[0], y * shrink[1]
         across, down = x[:, None] - x[None, :], y[:, None] - y[None, :]
         distance = np.sqrt(across**2 + down**2)
