@@ -155,7 +155,7 @@ class Study:
     ----------
     membership : DataFrame
         Columns `MEMBERSHIP_COLUMNS`; one row per gene and module, by module then falling confidence then gene.
-        `second_module` is empty (None) where there is none; missing figures are NaN.
+        `second_module` is missing (None or NaN, as pandas keeps it) where there is none; missing figures are NaN.
     module_table : DataFrame
         Columns `MODULE_COLUMNS`; one row a module, M1 first.
     shown : str
