@@ -76,7 +76,7 @@ class EdgeList:
         layout = _find_layout(text, source)
         columns = find_columns(layout.table(source), weight)
         collector = _collect(text, layout, RowCollector(source, columns, strict, layout.separator), progress)
-        if layout.header_line is not None and layout.guessed and collector.knows(layout.labels(columns)):
+        if layout.header_line is not None and layout.in_doubt and collector.knows(layout.labels(columns)):
             # The first row was taken for a header, and its labels are those of nodes: it was a row after all.
             layout = layout.without_header()
             columns = find_columns(layout.table(source), weight)

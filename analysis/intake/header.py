@@ -36,7 +36,7 @@ def find_header(first: Sequence[str], sample: Sequence[Sequence[str]]) -> Header
 
     It is one where it names both label columns in known words, or where a column of numbers begins with a word.
     It is none where it contains a number, or where its labels come back below, or look like those below
-    (`gene1 gene2` over `gene2 gene3`).
+    (`gene1 gene2` over `gene2 gene3`), unless a known word for a weight stands over numbers (`a b score`).
 
     Parameters
     ----------
@@ -54,7 +54,7 @@ def find_header(first: Sequence[str], sample: Sequence[Sequence[str]]) -> Header
     pair = find_pair(cells)
     if not (_names_all(cells, pair) if not sample else pair or _stands_over_numbers(cells, sample)):
         return None
-    if _like_data(cells, pair or first_two(cells), sample):
+    if not _names_a_weight(cells, sample) and _like_data(cells, pair or first_two(cells), sample):
         return None
     return Header(tuple(cells), pair)
 
@@ -146,6 +146,16 @@ def _stands_over_numbers(cells: Sequence[str], sample: Sequence[Sequence[str]]) 
         if share >= MOST:
             return True
     return False
+
+
+def _names_a_weight(cells: Sequence[str], sample: Sequence[Sequence[str]]) -> bool:
+    """Tell whether a known word for a weight stands over numbers."""
+    labels = first_two(cells)
+    return any(
+        weight_rank(cell) is not None and share_of_numbers(column_of(sample, place), ",") >= MOST
+        for place, cell in enumerate(cells)
+        if place not in labels
+    )
 
 
 def _like_data(cells: Sequence[str], labels: tuple[int, int], sample: Sequence[Sequence[str]]) -> bool:
