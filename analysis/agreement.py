@@ -12,7 +12,7 @@ from numpy.typing import NDArray
 from analysis.modules import Modules
 from analysis.network import FloatArray
 
-DENSE_TABLE = 4_000_000
+CELLS_PER_NODE, FEW_NODES = 16, 1_000  # a table with more cells costs more to search than sorting the nodes does
 
 
 @dataclass(frozen=True)
@@ -42,7 +42,7 @@ def contingency(first: NDArray[Any], second: NDArray[Any]) -> Contingency:
     """Count the nodes that share each pair of labels; labels are non-negative, shape (nodes,)."""
     rows, columns = int(first.max(initial=-1)) + 1, int(second.max(initial=-1)) + 1
     key = first.astype(np.int64) * columns + second
-    if rows * columns <= DENSE_TABLE:
+    if rows * columns <= CELLS_PER_NODE * max(len(first), FEW_NODES):
         table = np.bincount(key, minlength=rows * columns)
         cells = np.flatnonzero(table)
         counts = table[cells]

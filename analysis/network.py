@@ -147,6 +147,11 @@ class Network:
         return self.weights if self.weights is not None else np.ones(self.edge_count)
 
     @cached_property
+    def upper_weight(self) -> float:
+        """95 % quantile of the weights: what a strong edge has, whatever outliers there are; 1 where unweighted."""
+        return 1.0 if self.weights is None or not len(self.weights) else float(np.quantile(self.weights, 0.95))
+
+    @cached_property
     def degree(self) -> IntArray:
         """Number of edges of each node, shape (nodes,)."""
         ends = np.concatenate([self.sources, self.targets])

@@ -140,6 +140,6 @@ def _limit(study: Study) -> list[str]:
     if not below:
         return []
     return [
-        f"{below} of them have so few edges inside that modularity at resolution 1 could have merged them with a "
-        "neighbour (resolution limit); look at finer resolutions too."
+        f"Modules with so few edges inside that modularity at resolution 1 could have merged them with a neighbour "
+        f"(resolution limit): {below}; look at finer resolutions too."
     ]

@@ -12,6 +12,8 @@ from analysis.methods.louvain import Louvain
 from analysis.modules import Modules
 from analysis.network import IntArray, Network
 
+__all__ = ["METHODS", "CliquePercolation", "Leiden", "Louvain", "Method", "Optimiser"]
+
 
 class Method(Protocol):
     """A frozen dataclass of settings with one verb."""

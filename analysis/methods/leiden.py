@@ -111,7 +111,7 @@ class Leiden:
 
 def weight_unit(network: Network) -> float:
     """Return the 95 % quantile of the weights, the unit of the constant Potts model; 1 if unweighted."""
-    return 1.0 if network.weights is None else float(np.quantile(network.weights, 0.95))
+    return network.upper_weight
 
 
 def _weights(network: Network, quality: str) -> list[float] | str | None:

@@ -30,8 +30,9 @@ def resolution_grid(
 
     The ends, where they are not given:
 
-    - constant Potts model: from half the density of the whole network (held between 0.001 and 0.1) to 0.9; below,
-      one module grows so large that the genes at its rim fall off it one by one; the resolution is an inside density, so nothing lies beyond 1;
+    - constant Potts model: from half the density of the whole network (held between 0.001 and 0.1) to 0.9; below, one
+      module grows so large that the genes at its rim fall off it one by one; the resolution is an inside density, so
+      nothing lies beyond 1;
     - modularity: from 0.05 to the resolution beyond which nine edges in ten no longer hold their two ends together.
       Two nodes of strengths `k_i`, `k_j` with an edge `w` gain by joining while ``γ < 2Ww / (k_i k_j)`` (from the
       formula of modularity). The fine end is held between 4 and 60: beyond that, ask for tight groups instead.
