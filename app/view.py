@@ -44,6 +44,19 @@ class View:
         """Return the network at hand."""
         return self.desk.network(self.fingerprint) if self.fingerprint else None
 
+    @property
+    def answered(self) -> bool:
+        """Whether the study shown is the one that the window asks for."""
+        if self.study is None:
+            return False
+        settings = self.study.settings
+        keys = ["method", "seed"]
+        keys += ["resolution", "show"] if settings.method in {"leiden", "louvain"} else []
+        keys += ["quality"] if settings.method == "leiden" else []
+        keys += ["k"] if settings.method == "clique-percolation" else []
+        keys += ["keep"] if settings.method == "harvest" else []
+        return all(getattr(settings, key) == self.wanted.get(key) for key in keys)
+
     def module_of(self, pick: Mapping[str, Any]) -> int:
         """Return the module that a pick means in the clustering shown; −1 where it is gone.
 

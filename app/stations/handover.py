@@ -22,9 +22,14 @@ FILES = (
 
 
 def state(view: View) -> str:
-    """Return how far the station is: done once this clustering was handed over."""
-    handed = view.desk.workspace.recall(f"handed over {view.study_id}") if view.study_id else None
-    return "done" if handed else "empty"
+    """Return how far the station is: done once this clustering was handed over, stale where another was."""
+    if not view.study_id or not view.fingerprint:
+        return "empty"
+    recall = view.desk.workspace.recall
+    if recall(f"handed over {view.study_id}"):
+        return "done"
+    others = view.desk.workspace.trail(view.fingerprint)
+    return "stale" if any(recall(f"handed over {entry.id}") for entry in others) else "empty"
 
 
 def render(view: View) -> Pane:

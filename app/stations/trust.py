@@ -21,10 +21,13 @@ STRIP_SHOWN = 60
 
 
 def state(view: View) -> str:
-    """Return how far the station is: done once null networks were run too."""
-    if view.study is None:
+    """Return how far the station is: done once null networks were run too, stale where that was another clustering."""
+    if view.study is None or view.fingerprint is None:
         return "empty"
-    return "done" if view.study.nulls is not None or view.study.copies else "empty"
+    if view.study.nulls is not None or view.study.settings.method == HARVEST:
+        return "done"
+    others = view.desk.workspace.trail(view.fingerprint)
+    return "stale" if any(entry.figures.get("p_value") is not None for entry in others) else "empty"
 
 
 def render(view: View) -> Pane:
