@@ -14,27 +14,11 @@ import numpy as np
 from numpy.typing import NDArray
 
 from analysis.agreement import membership_matrix
+from analysis.colours import MODULE_COLOURS, SMALL
 from analysis.modules import Modules
 from analysis.network import Network
 
-# Okabe & Ito 2008 without black and yellow first, then darker and browner companions; yellow is too pale for paper.
-PALETTE = (
-    "#0072b2",
-    "#e69f00",
-    "#009e73",
-    "#cc79a7",
-    "#56b4e9",
-    "#d55e00",
-    "#5b4ea3",
-    "#b3a800",
-    "#3d7a2b",
-    "#a0522d",
-    "#1f9e9a",
-    "#c2478b",
-    "#7a6ff0",
-    "#8c6d1f",
-)
-GREY = "#9aa5a3"
+PALETTE, GREY = MODULE_COLOURS, SMALL
 
 
 @dataclass(frozen=True, eq=False)

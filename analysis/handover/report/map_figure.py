@@ -7,7 +7,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from analysis.handover.report.colours import SMALL, SMALLEST_COLOURED, module_colour
+from analysis.colours import SMALL, SMALLEST_COLOURED, module_colour
 from analysis.handover.report.map_labels import labels_of
 from analysis.handover.report.markup import Markup, join, short, tag
 from analysis.handover.report.wording import count

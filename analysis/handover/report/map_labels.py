@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from analysis.handover.report.colours import SMALLEST_COLOURED
+from analysis.colours import SMALLEST_COLOURED
 from analysis.handover.report.markup import Markup, short, tag
 from analysis.network import FloatArray
 from analysis.study import Study

@@ -6,8 +6,8 @@ from typing import Any
 
 import numpy as np
 
+from analysis.colours import module_colour
 from analysis.handover.report.charts import DOUBT, bar
-from analysis.handover.report.colours import module_colour
 from analysis.handover.report.markup import Markup, join, short, tag
 from analysis.handover.report.wording import MISSING, chance, count, figure, is_known
 from analysis.study import Study

@@ -1,8 +1,8 @@
-"""Colours of modules in figures."""
+"""The one palette of modules: in reports, in figures, and on the map on screen (`assets/glue.js` has the same)."""
 
 from __future__ import annotations
 
-# Okabe & Ito 2008 without black and yellow first, then darker and browner companions; the map on screen has the same.
+# Okabe & Ito 2008 without black and yellow first, then darker and browner companions; yellow is too pale for paper.
 MODULE_COLOURS = (
     "#0072b2",
     "#e69f00",
