@@ -3,9 +3,9 @@
 from __future__ import annotations
 
 import os
-from collections.abc import Iterator
+from collections.abc import Iterator, Sequence
 from contextlib import contextmanager
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from pathlib import Path
 
 from analysis.compute import Compute, open_compute
@@ -17,6 +17,7 @@ from analysis.handover import (
     SweepBundle,
     bundle_files,
     check_folder,
+    check_parts,
     sweep_bundle_files,
     write_folder,
 )
@@ -62,9 +63,22 @@ class Input:
 
 
 def read_input(
-    path: Path, weight: str | None = None, min_weight: float | None = None, progress: Progress = silent
+    path: Path,
+    weight: str | None = None,
+    min_weight: float | None = None,
+    progress: Progress = silent,
+    *,
+    strict: bool = True,
+    label: str = "",
 ) -> Input:
-    """Read a network strictly, and leave out its weak edges.
+    """Read a network and leave out its weak edges.
+
+    Parameters
+    ----------
+    strict : bool
+        Stop where a weight is text, rather than reject its row.
+    label : str
+        What to call the network; the name of its file where it is empty.
 
     Raises
     ------
@@ -73,8 +87,10 @@ def read_input(
     SettingError
         Where `min_weight` does not fit the network.
     """
-    reading = read_network(path, weight=weight, strict=True, progress=progress)
+    reading = read_network(path, weight=weight, strict=strict, progress=progress)
     network = require_edges(reading.network, path)
+    if label:
+        network = replace(network, label=label)
     if min_weight is not None:
         network = cut_by_weight(network, min_weight)
     return Input(path, network, reading.report, weight, min_weight)
@@ -88,14 +104,21 @@ def require_edges(network: Network, path: Path) -> Network:
 
 
 def study_into(
-    given: Input, settings: StudySettings, out: Path, address: str | None = None, progress: Progress = silent
+    given: Input,
+    settings: StudySettings,
+    out: Path,
+    address: str | None = None,
+    progress: Progress = silent,
+    *,
+    parts: Sequence[str] = (),
 ) -> Study:
-    """Run a study and write everything into the folder `out`, whole or not at all."""
+    """Run a study and write everything into the folder `out`, whole or not at all; `parts` are keys of `EXTRAS`."""
     check_folder(out)
+    check_parts(parts, settings)
     runs = settings.runs + settings.nulls + NOISY_COPIES + SUPPORT_STEPS * SUPPORT_COPIES
     with _computing(address, given.network, runs) as compute:
         study = run_study(given.network, settings, compute=compute, progress=portion(progress, 0.0, 0.9))
-    bundle = Bundle(study, given.report, given.source(out))
+    bundle = Bundle(study, given.report, given.source(out), tuple(parts))
     write_folder(bundle_files(bundle, portion(progress, 0.9, 1.0)), out)
     return study
 

@@ -4,12 +4,16 @@ from __future__ import annotations
 
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass, fields
-from typing import Any
+from functools import cached_property
+from typing import TYPE_CHECKING, Any
 
 from analysis.intake.report import IntakeReport, Rejected, Role
-from analysis.network import Network
+from analysis.network import FloatArray, Network
 from analysis.study import Study
 from analysis.trust.sweep import Sweep
+
+if TYPE_CHECKING:
+    import pandas as pd
 
 
 @dataclass(frozen=True)
@@ -32,6 +36,23 @@ class Source:
 
 
 @dataclass(frozen=True, eq=False)
+class Section:
+    """A further chapter of the report, such as enrichment or bridges: sentences first, then a table.
+
+    Attributes
+    ----------
+    title : str
+    sentences : tuple of str
+    table : DataFrame or None
+        Shown as it is, column names as heads.
+    """
+
+    title: str
+    sentences: tuple[str, ...]
+    table: pd.DataFrame | None = None
+
+
+@dataclass(frozen=True, eq=False)
 class Bundle:
     """Everything that can be handed over.
 
@@ -43,11 +64,24 @@ class Bundle:
         How the network was read; None where it did not come from a file.
     source : Source or None
         The file; None where there was none.
+    parts : tuple of str
+        What is to be written beside the files that always are; keys of `analysis.handover.EXTRAS`.
+    sections : tuple of Section
+        Further chapters of the report, in their order.
     """
 
     study: Study
     report: IntakeReport | None = None
     source: Source | None = None
+    parts: tuple[str, ...] = ()
+    sections: tuple[Section, ...] = ()
+
+    @cached_property
+    def positions(self) -> FloatArray:
+        """Where each gene stands on the map, shape (nodes, 2)."""
+        from analysis.layout import layout
+
+        return layout(self.study.network)
 
 
 @dataclass(frozen=True, eq=False)

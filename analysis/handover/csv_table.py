@@ -19,14 +19,14 @@ if TYPE_CHECKING:
 
 FORMULA_STARTS = ("=", "+", "-", "@", "\t", "\r", "\n", "＝", "＋", "－", "＠")
 """First characters of a cell that spreadsheets may take for a formula (OWASP, "CSV Injection")."""
-QUOTED = frozenset(',"\r\n')
+QUOTED = frozenset(',"\r\n\t')
 
 
-def csv_bytes(table: pd.DataFrame) -> bytes:
-    """Return the table as CSV, columns in their order, without the index."""
+def csv_bytes(table: pd.DataFrame, separator: str = ",") -> bytes:
+    """Return the table as CSV, or with tabs, columns in their order, without the index."""
     columns = [_cells(table[name].tolist()) for name in table.columns]
-    lines = [",".join(_quoted(str(name)) for name in table.columns)]
-    lines += [",".join(cells) for cells in zip(*columns, strict=True)]
+    lines = [separator.join(_quoted(str(name)) for name in table.columns)]
+    lines += [separator.join(cells) for cells in zip(*columns, strict=True)]
     return ("\n".join(lines) + "\n").encode()
 
 

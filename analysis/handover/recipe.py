@@ -9,6 +9,7 @@ from typing import Any
 from analysis.errors import InputError, SettingError
 from analysis.handover.bundle import Bundle, Source, SweepBundle
 from analysis.handover.recipe_parts import Kinds, kinds_of, parse_toml, refuse_unknown, table_of, texts_of, values_of
+from analysis.intake.reading import label_of
 from analysis.network import Network
 from analysis.study import SUGGEST, StudySettings
 from analysis.trust.sweep import SweepSettings
@@ -17,6 +18,8 @@ from analysis.version import VERSION, versions
 MODULES, SWEEP = "modules", "sweep"
 
 _NETWORK = ("file", "sha256", "fingerprint")
+_LABEL = "label"
+_HANDOVER = "handover"
 _TAKEN: Kinds = {"weight": (str,), "min_weight": (float, int)}
 """How the network was taken from its file; not a setting of the sweep itself."""
 
@@ -39,6 +42,10 @@ class Recipe:
         Edges below are left out.
     versions : mapping of str to str
         Of corymb, Python and the libraries that made the tables.
+    label : str
+        What the network was called, where that is not the name of its file; else empty.
+    parts : tuple of str
+        What was written beside the files that always are.
     """
 
     source: Source
@@ -47,6 +54,8 @@ class Recipe:
     weight: str | None
     min_weight: float | None
     versions: Mapping[str, str]
+    label: str = ""
+    parts: tuple[str, ...] = ()
 
 
 def recipe_file(bundle: Bundle) -> dict[str, bytes]:
@@ -55,7 +64,8 @@ def recipe_file(bundle: Bundle) -> dict[str, bytes]:
     if bundle.study.suggestion:
         settings["resolution"] = SUGGEST  # the study holds what was suggested; to repeat it, it must be asked for again
     names = {module: name for module, name in settings.pop("names").items() if name}
-    return _render(MODULES, bundle.source, bundle.study.network, settings, {"names": names} if names else {})
+    more: dict[str, Any] = {_HANDOVER: {"also": list(bundle.parts)}} if bundle.parts else {}
+    return _render(MODULES, bundle.source, bundle.study.network, settings, more | ({"names": names} if names else {}))
 
 
 def sweep_recipe_file(bundle: SweepBundle) -> dict[str, bytes]:
@@ -73,12 +83,22 @@ def _render(
         return {}
     content = {
         "work": work,
-        "network": {"file": source.path, "sha256": source.sha256, "fingerprint": network.fingerprint},
+        "network": {
+            "file": source.path,
+            "sha256": source.sha256,
+            "fingerprint": network.fingerprint,
+            **_label(network),
+        },
         "settings": {key: value for key, value in settings.items() if value is not None},
         **more,
         "versions": versions(),
     }
     return {"recipe.toml": tomli_w.dumps(content).encode()}
+
+
+def _label(network: Network) -> dict[str, str]:
+    """Return what the network is called, where its file does not say so."""
+    return {} if network.label == label_of(network.provenance.get("file", "")) else {_LABEL: network.label}
 
 
 def read_recipe(text: str, where: str = "recipe.toml") -> Recipe:
@@ -99,9 +119,11 @@ def read_recipe(text: str, where: str = "recipe.toml") -> Recipe:
     content = parse_toml(text, where)
     written = texts_of(content, "versions", where)
     writer = written.get("corymb", "")
-    refuse_unknown(where, "the recipe", content, ("work", "network", "settings", "names", "versions"), writer)
+    refuse_unknown(
+        where, "the recipe", content, ("work", "network", _HANDOVER, "settings", "names", "versions"), writer
+    )
     network = texts_of(content, "network", where)
-    refuse_unknown(where, "[network]", network, _NETWORK, writer)
+    refuse_unknown(where, "[network]", network, (*_NETWORK, _LABEL), writer)
     if missing := [key for key in _NETWORK if key not in network]:
         raise InputError(where, f"[network] lacks {missing[0]!r}", "use the recipe as it was written")
     path = network["file"]
@@ -113,7 +135,28 @@ def read_recipe(text: str, where: str = "recipe.toml") -> Recipe:
         settings, taken = (_study if work == MODULES else _sweep)(content, where, writer)
     except SettingError as error:
         raise InputError(where, str(error), "mend it in the recipe") from None
-    return Recipe(source, network["fingerprint"], settings, taken.get("weight"), taken.get("min_weight"), written)
+    return Recipe(
+        source,
+        network["fingerprint"],
+        settings,
+        taken.get("weight"),
+        taken.get("min_weight"),
+        written,
+        network.get(_LABEL, ""),
+        _parts(content, where, writer),
+    )
+
+
+def _parts(content: Mapping[str, Any], where: str, writer: str) -> tuple[str, ...]:
+    """Return what is to be written beside the files that always are; which parts there are is checked on writing."""
+    if _HANDOVER not in content:
+        return ()
+    table = table_of(content, _HANDOVER, where)
+    refuse_unknown(where, f"[{_HANDOVER}]", table, ("also",), writer)
+    parts = table.get("also", [])
+    if not isinstance(parts, list) or not all(isinstance(part, str) for part in parts):
+        raise InputError(where, f"also in [{_HANDOVER}] is {parts!r}", "give a list of texts")
+    return tuple(dict.fromkeys(parts))
 
 
 def _study(content: Mapping[str, Any], where: str, writer: str) -> tuple[StudySettings, dict[str, Any]]:

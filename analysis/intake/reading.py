@@ -93,7 +93,7 @@ def parse_network(
     )
     del text
     progress(0.8, "merging rows")
-    merged = merge(interactions, _label(source), _provenance(data, source, interactions))
+    merged = merge(interactions, label_of(source), _provenance(data, source, interactions))
     if not merged.network.node_count:
         raise _nothing_left(interactions, source)
     report = _report(source, interactions, merged, list(warnings))
@@ -101,7 +101,7 @@ def parse_network(
     return Reading(merged.network, report)
 
 
-def _label(source: str) -> str:
+def label_of(source: str) -> str:
     """Return the file's name without folder and known endings."""
     name = PurePath(source.replace("\\", "/")).name
     while (ending := PurePath(name).suffix.lower()) in ENDINGS:

@@ -53,6 +53,13 @@ def add_arguments(parser: ArgumentParser) -> None:
         "--keep", metavar="supported|all", help="for harvest: down to where chance begins, or all; default: supported"
     )
     parser.add_argument("--effort", metavar="quick|full", help="for harvest: some 290 runs or some 740; default: quick")
+    parser.add_argument(
+        "--also",
+        metavar="PART",
+        action="append",
+        default=[],
+        help="write this too, once for each: tsv, xlsx, parquet, core-lists, set-lines, map-svg, map-pdf, figure-data",
+    )
     add_weights(parser)
     add_compute(parser)
     add_quiet(parser)
@@ -61,13 +68,15 @@ def add_arguments(parser: ArgumentParser) -> None:
 def run(arguments: Namespace, terminal: Terminal) -> int:
     """Cluster, write the folder, and tell the outcome."""
     settings = settings_from(arguments)
-    from analysis.handover import check_folder
+    from analysis.handover import check_folder, check_parts
     from app.pipeline import read_input, study_into
 
+    parts = tuple(dict.fromkeys(arguments.also))
+    check_parts(parts, settings)
     check_folder(arguments.out)
     progress = terminal.progress(quiet=arguments.quiet)
     given = read_input(arguments.network, settings.weight, settings.min_weight)
-    study = study_into(given, settings, arguments.out, arguments.compute, progress)
+    study = study_into(given, settings, arguments.out, arguments.compute, progress, parts=parts)
     if not arguments.quiet:
         for sentence in (*reading_sentences(given), *study.sentences):
             terminal.say(sentence)

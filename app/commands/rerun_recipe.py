@@ -4,6 +4,8 @@ from __future__ import annotations
 
 import hashlib
 from argparse import ArgumentParser, Namespace
+from collections.abc import Callable
+from functools import partial
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -13,9 +15,10 @@ from app.terminal import Terminal
 
 if TYPE_CHECKING:
     from analysis.handover import Recipe
+    from analysis.network import Network
 
 NAME = "rerun"
-HELP = "repeat what a recipe says; gives the same tables"
+HELP = "repeat what a recipe says; gives the same tables, or says what differs"
 LARGEST_RECIPE = 4_000_000
 
 
@@ -23,6 +26,11 @@ def add_arguments(parser: ArgumentParser) -> None:
     """Add the arguments of `corymb rerun`."""
     parser.add_argument("recipe", metavar="RECIPE", type=Path, help="recipe.toml of an earlier output")
     add_out(parser)
+    parser.add_argument(
+        "--anyway",
+        action="store_true",
+        help="go on where a file or a library is not what it was; the tables may differ",
+    )
     add_compute(parser)
     add_quiet(parser)
 
@@ -35,19 +43,14 @@ def run(arguments: Namespace, terminal: Terminal) -> int:
 
     recipe = open_recipe(arguments.recipe)
     check_folder(arguments.out)
-    given = read_input(find_source(recipe, arguments.recipe), recipe.weight, recipe.min_weight)
-    if given.network.fingerprint != recipe.fingerprint:
-        raise InputError(
-            str(arguments.recipe),
-            "the same file gives another network than when the recipe was written",
-            "--weight or --min-weight were changed in it, or another corymb wrote it; run corymb modules anew",
-        )
-    if not arguments.quiet:
-        for difference in differing_versions(recipe):
-            terminal.note(difference)
+    told: Callable[[InputError], None] = partial(_differs, anyway=arguments.anyway, terminal=terminal)
+    check_versions(recipe, arguments.recipe, told)
+    path = find_source(recipe, arguments.recipe, told)
+    given = read_input(path, recipe.weight, recipe.min_weight, strict=False, label=recipe.label)
+    check_network(given.network, recipe, arguments.recipe, told)
     progress = terminal.progress(quiet=arguments.quiet)
     if isinstance(recipe.settings, StudySettings):
-        study_into(given, recipe.settings, arguments.out, arguments.compute, progress)
+        study_into(given, recipe.settings, arguments.out, arguments.compute, progress, parts=recipe.parts)
     else:
         sweep_into(given, recipe.settings, arguments.out, arguments.compute, progress)
     if not arguments.quiet:
@@ -69,8 +72,29 @@ def open_recipe(path: Path) -> Recipe:
     return read_recipe(text, str(path))
 
 
-def find_source(recipe: Recipe, path: Path) -> Path:
-    """Return the recipe's network, unchanged: where it was as seen from the recipe, or beside the recipe.
+def _differs(difference: InputError, *, anyway: bool, terminal: Terminal) -> None:
+    """Stop at a difference, or tell it and go on where that was asked for."""
+    if not anyway:
+        raise InputError(difference.where, difference.found, f"{difference.remedy}, or go on with --anyway")
+    terminal.note(f"{difference.where}: {difference.found}; going on, so the tables may differ")
+
+
+def check_network(network: Network, recipe: Recipe, path: Path, told: Callable[[InputError], None]) -> None:
+    """Tell where the network is not the one that the recipe was written for."""
+    if network.fingerprint != recipe.fingerprint:
+        told(
+            InputError(
+                str(path),
+                "the file gives another network than when the recipe was written (its fingerprint differs)",
+                "take back changes of weight or min_weight in it, or run corymb modules anew",
+            )
+        )
+
+
+def find_source(recipe: Recipe, path: Path, told: Callable[[InputError], None]) -> Path:
+    """Return the recipe's network: where it was as seen from the recipe, or beside the recipe.
+
+    A file that is not what it was is told of, and taken where that does not stop the work.
 
     Raises
     ------
@@ -86,11 +110,14 @@ def find_source(recipe: Recipe, path: Path) -> Path:
         if hashlib.sha256(read_bytes(place)).hexdigest() == recipe.source.sha256:
             return place
     if there:
-        raise InputError(
-            str(there[0]),
-            "the file has changed since the recipe was written (its SHA-256 differs)",
-            f"put the file as it was beside {path.name}, or run corymb modules on this one",
+        told(
+            InputError(
+                str(there[0]),
+                "the file has changed since the recipe was written (its SHA-256 differs)",
+                f"put the file as it was beside {path.name}",
+            )
         )
+        return there[0]
     raise InputError(
         str(path),
         f"the network's file {recipe.source.path!r} is not there",
@@ -98,8 +125,8 @@ def find_source(recipe: Recipe, path: Path) -> Path:
     )
 
 
-def differing_versions(recipe: Recipe) -> list[str]:
-    """Return a sentence on the libraries that have another version than when the recipe was written."""
+def check_versions(recipe: Recipe, path: Path, told: Callable[[InputError], None]) -> None:
+    """Tell which libraries have another version than when the recipe was written."""
     from analysis.version import versions
 
     here = versions()
@@ -108,6 +135,5 @@ def differing_versions(recipe: Recipe) -> list[str]:
         for name, there in recipe.versions.items()
         if here.get(name) != there
     ]
-    if not different:
-        return []
-    return [f"The recipe was written with {', '.join(different)}: tables may differ."]
+    if different:
+        told(InputError(str(path), f"the recipe was written with {', '.join(different)}", "install these versions"))

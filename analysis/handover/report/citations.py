@@ -52,6 +52,13 @@ REFERENCES = {
 _MARK = re.compile(r"\[([a-z]+(?:, [a-z]+)*)\]")
 
 
+def cited_keys(sentences: Sequence[str]) -> list[str]:
+    """Return the keys of the references that sentences name, in the order in which they come."""
+    marks = (match[1].split(", ") for match in _MARK.finditer(" ".join(sentences)))
+    found = [key for keys in marks if all(key in REFERENCES for key in keys) for key in keys]
+    return list(dict.fromkeys(found))
+
+
 def cited(sentences: Sequence[str]) -> tuple[str, list[str]]:
     """Return a text with marks such as `[leiden, igraph]` numbered in the order in which they come.
 

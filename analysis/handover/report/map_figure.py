@@ -12,7 +12,7 @@ from analysis.handover.report.map_labels import labels_of
 from analysis.handover.report.markup import Markup, join, short, tag
 from analysis.handover.report.wording import count
 from analysis.modules import NO_MODULE
-from analysis.network import FloatArray
+from analysis.network import FloatArray, Network
 from analysis.study import Study
 
 WIDTH, TALLEST, MARGIN = 1000.0, 720.0, 68.0
@@ -75,9 +75,7 @@ def fit(positions: FloatArray) -> Sheet:
 def draw_genes(study: Study, sheet: Sheet) -> MapFigure:
     """Draw every gene, the edges (a random part where there are very many), and shading behind the modules."""
     network = study.network
-    shown = np.arange(network.edge_count)
-    if network.edge_count > MOST_EDGES:
-        shown = np.sort(np.random.default_rng(EDGE_SEED).choice(network.edge_count, MOST_EDGES, replace=False))
+    shown = shown_edges(network)
     picture = _sheet(
         sheet.height,
         _shading(study, sheet),
@@ -97,6 +95,14 @@ def draw_genes(study: Study, sheet: Sheet) -> MapFigure:
         f"{SMALLEST_COLOURED} and of none are grey.{shared}{part} The drawing places modules first and then their "
         "genes, so that nearness in it proves nothing.",
     )
+
+
+def shown_edges(network: Network) -> NDArray[np.int64]:
+    """Return which edges are drawn: all, or a random part where there are very many."""
+    if network.edge_count <= MOST_EDGES:
+        return np.arange(network.edge_count)
+    chosen = np.random.default_rng(EDGE_SEED).choice(network.edge_count, MOST_EDGES, replace=False)
+    return np.sort(chosen).astype(np.int64)
 
 
 def draw_modules(study: Study, sheet: Sheet) -> MapFigure:
