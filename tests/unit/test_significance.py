@@ -18,7 +18,7 @@ from analysis.modules import Modules, standard_modularity
 from analysis.network import Network
 from analysis.statistics import benjamini_hochberg
 from analysis.study import NullDraws
-from analysis.trust.chance import NullTask, ObservedTask, compare_with_chance, fair_runs
+from analysis.trust.chance import NullTask, ObservedTask, bounded, compare_with_chance, fair_runs
 from analysis.trust.chance_scale import ChanceModules, ChanceScale
 from analysis.trust.nulls import rewire
 from analysis.trust.significance import Significance, against_nulls, verdict
@@ -132,6 +132,14 @@ def test_small_networks_get_as_many_runs_on_each_null_large_ones_a_single_run() 
     seeds = child_seeds(3, 4)
     best = max((method.find(small, seed=seed) for seed in seeds), key=lambda modules: modules.quality)
     assert ObservedTask(method, 3, 4).run(small).modularity == standard_modularity(small, best)
+
+
+def test_leiden_until_stable_is_held_to_ten_passes_on_large_networks_only() -> None:
+    small, large = erdos_renyi(1), network_of(networkx.gnm_random_graph(500, 11_000, seed=1))
+    assert bounded(Leiden(resolution=0.7), small) == Leiden(resolution=0.7)
+    assert bounded(Leiden(resolution=0.7), large) == Leiden(resolution=0.7, iterations=10)
+    assert bounded(Leiden(iterations=2), large) == Leiden(iterations=2)
+    assert bounded(Louvain(), large) == Louvain()
 
 
 # --- Power
