@@ -18,12 +18,14 @@ from analysis.methods import Method
 from analysis.methods.randomness import child_seeds
 from analysis.network import FloatArray, IntArray, Network, locked
 from analysis.progress import Progress, silent
+from analysis.trust.chance import bounded
 from analysis.trust.noise import REWIRED, Noise
 from analysis.trust.nulls import rewire
 
 SHARES = (0.02, 0.05, 0.1, 0.15, 0.2, 0.3, 0.4)
 COPIES = 5
 PURPOSE = 6
+PASSES = 2
 SPOKEN_SHARE = 0.1
 CLEARLY = 2.0
 
@@ -140,7 +142,8 @@ def noise_curve(
     Parameters
     ----------
     method : Method
-        The method whose modules are in question, with the same settings.
+        The method whose modules are in question, with the same settings. Leiden until stable is held to two passes on
+        large networks, in every run (`analysis.trust.chance.bounded`).
     seed : int
         Seed; a copy does not depend on how many shares or copies there are.
     shares : sequence of float
@@ -163,7 +166,7 @@ def noise_curve(
         raise SettingError(f"the noise curve needs 2 copies or more at each share, not {copies}")
     for share in shares:
         Noise(share, 0, kind)  # refuses what cannot be done before any work begins
-    cells, tasks = _plan(method, tuple(shares), copies, kind, seed)
+    cells, tasks = _plan(bounded(method, network, PASSES), tuple(shares), copies, kind, seed)
     curve = _Growing(kind, shares, copies)
     stream = compute.stream(network, tasks, progress=progress, phrase=f"copies with a share of the edges {kind}")
     for position, labels in stream:

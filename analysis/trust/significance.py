@@ -28,6 +28,7 @@ from analysis.trust.chance import (
     NullTask,
     ObservedTask,
     RunFigures,
+    bounded,
     compare_with_chance,
     fair_runs,
     gather_chance,
@@ -92,7 +93,9 @@ def against_nulls(
     network : Network
         With weights, the nulls have them shuffled over their rewired edges.
     method : Method
-        The method that found the modules, with the same settings; any that has `find(network, seed=…)`.
+        The method that found the modules, with the same settings; any that has `find(network, seed=…)`. Leiden until
+        stable is held to ten passes on large networks, on the nulls and on the network alike
+        (`analysis.trust.chance.bounded`).
     modules : Modules
         The modules to judge, a partition or a cover.
     nulls : int
@@ -112,8 +115,8 @@ def against_nulls(
     if nulls < 1:
         raise SettingError(f"the number of null networks is {nulls}; give 1 or more")
     own, *children = child_seeds(seed, nulls + 1, purpose=PURPOSE)
-    each = fair_runs(network, chosen_from)
-    tasks: list[Task] = [ObservedTask(method, own, each), *(NullTask(method, child, each) for child in children)]
+    form, each = bounded(method, network), fair_runs(network, chosen_from)
+    tasks: list[Task] = [ObservedTask(form, own, each), *(NullTask(form, child, each) for child in children)]
     runs: dict[int, RunFigures] = {}
     phrase = f"{nulls} random networks with the same degrees"
     for position, figures in compute.stream(network, tasks, progress=progress, phrase=phrase):
