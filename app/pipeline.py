@@ -137,8 +137,8 @@ def sweep_into(
 
 
 def relative_path(path: Path, folder: Path) -> str:
-    """Return the way from a folder to a file, with `/`; its name where there is no way, or no file that stays."""
-    if not path.is_file():
+    """Return the way from a folder to a file or folder, with `/`; its name where there is no way, or none that stays."""
+    if not (path.is_file() or path.is_dir()):
         return path.name
     try:
         return Path(os.path.relpath(path.resolve(), folder.resolve())).as_posix()

@@ -15,6 +15,9 @@ from analysis.trust.sweep import Sweep
 if TYPE_CHECKING:
     import pandas as pd
 
+    from analysis.handover.meaning_recipe import MeaningRequest
+    from analysis.meaning import Meaning
+
 
 @dataclass(frozen=True)
 class Source:
@@ -68,6 +71,10 @@ class Bundle:
         What is to be written beside the files that always are; keys of `analysis.handover.EXTRAS`.
     sections : tuple of Section
         Further chapters of the report, in their order.
+    meaning : Meaning or None
+        Enrichment in gene sets, where they were given.
+    meaning_request : MeaningRequest or None
+        What that was made from, for the recipe.
     """
 
     study: Study
@@ -75,6 +82,8 @@ class Bundle:
     source: Source | None = None
     parts: tuple[str, ...] = ()
     sections: tuple[Section, ...] = ()
+    meaning: Meaning | None = None
+    meaning_request: MeaningRequest | None = None
 
     @cached_property
     def positions(self) -> FloatArray:

@@ -8,6 +8,8 @@ from typing import Any
 
 from analysis.errors import InputError, SettingError
 from analysis.handover.bundle import Bundle, Source, SweepBundle
+from analysis.handover.meaning_files import ENRICH
+from analysis.handover.meaning_recipe import MEANING, MeaningRequest, meaning_table, read_meaning
 from analysis.handover.recipe_parts import Kinds, kinds_of, parse_toml, refuse_unknown, table_of, texts_of, values_of
 from analysis.intake.reading import label_of
 from analysis.network import Network
@@ -46,6 +48,8 @@ class Recipe:
         What the network was called, where that is not the name of its file; else empty.
     parts : tuple of str
         What was written beside the files that always are.
+    meaning : MeaningRequest or None
+        The gene sets, where there were any.
     """
 
     source: Source
@@ -56,6 +60,7 @@ class Recipe:
     versions: Mapping[str, str]
     label: str = ""
     parts: tuple[str, ...] = ()
+    meaning: MeaningRequest | None = None
 
 
 def recipe_file(bundle: Bundle) -> dict[str, bytes]:
@@ -65,6 +70,8 @@ def recipe_file(bundle: Bundle) -> dict[str, bytes]:
         settings["resolution"] = SUGGEST  # the study holds what was suggested; to repeat it, it must be asked for again
     names = {module: name for module, name in settings.pop("names").items() if name}
     more: dict[str, Any] = {_HANDOVER: {"also": list(bundle.parts)}} if bundle.parts else {}
+    if bundle.meaning_request is not None:
+        more[MEANING] = meaning_table(bundle.meaning_request)
     return _render(MODULES, bundle.source, bundle.study.network, settings, more | ({"names": names} if names else {}))
 
 
@@ -120,7 +127,7 @@ def read_recipe(text: str, where: str = "recipe.toml") -> Recipe:
     written = texts_of(content, "versions", where)
     writer = written.get("corymb", "")
     refuse_unknown(
-        where, "the recipe", content, ("work", "network", _HANDOVER, "settings", "names", "versions"), writer
+        where, "the recipe", content, ("work", "network", _HANDOVER, MEANING, "settings", "names", "versions"), writer
     )
     network = texts_of(content, "network", where)
     refuse_unknown(where, "[network]", network, (*_NETWORK, _LABEL), writer)
@@ -144,6 +151,7 @@ def read_recipe(text: str, where: str = "recipe.toml") -> Recipe:
         written,
         network.get(_LABEL, ""),
         _parts(content, where, writer),
+        read_meaning(content, where, writer),
     )
 
 

@@ -40,6 +40,7 @@ def summarise(bundle: Bundle) -> dict[str, Any]:
         "stability": {"seed_ami": study.seed_ami, "noise_ami": study.noise_ami},
         "significance": _significance(study.nulls),
         "sentences": list(study.sentences),
+        **({} if bundle.meaning is None else {"meaning": bundle.meaning.summary()}),
         "versions": versions(),
     }
 

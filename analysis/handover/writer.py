@@ -24,6 +24,8 @@ OWN_FILES = (
     "gene_lists/M*.txt",
     "gene_lists/background.txt",
     "report.html",
+    "enrichment.csv",
+    "spread.csv",
     "references.bib",
     "network.graphml",
     "membership.tsv",

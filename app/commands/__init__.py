@@ -4,9 +4,17 @@ from __future__ import annotations
 
 from types import ModuleType
 
-from app.commands import find_modules, inspect_network, open_dashboard, rerun_recipe, sweep_resolutions
+from app.commands import (
+    compare_clusterings,
+    find_modules,
+    inspect_network,
+    open_dashboard,
+    rerun_recipe,
+    sweep_resolutions,
+)
 
 COMMANDS: dict[str, ModuleType] = {
-    module.NAME: module for module in (open_dashboard, inspect_network, find_modules, sweep_resolutions, rerun_recipe)
+    module.NAME: module
+    for module in (open_dashboard, inspect_network, find_modules, sweep_resolutions, compare_clusterings, rerun_recipe)
 }
 """Each has `NAME`, `HELP`, `add_arguments(parser)` and `run(arguments, terminal) -> int`."""

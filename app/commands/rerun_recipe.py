@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import hashlib
 from argparse import ArgumentParser, Namespace
-from collections.abc import Callable
+from collections.abc import Callable, Mapping
 from functools import partial
 from pathlib import Path
 from typing import TYPE_CHECKING
@@ -37,14 +37,18 @@ def add_arguments(parser: ArgumentParser) -> None:
 
 def run(arguments: Namespace, terminal: Terminal) -> int:
     """Find the recipe's network, check that it is the same, and do the work again."""
-    from analysis.handover import check_folder
+    from analysis.handover import check_folder, read_recipe
+    from analysis.handover.comparison_files import is_comparison
     from analysis.study import StudySettings
     from app.pipeline import read_input, study_into, sweep_into
 
-    recipe = open_recipe(arguments.recipe)
-    check_folder(arguments.out)
+    text = recipe_text(arguments.recipe)
     told: Callable[[InputError], None] = partial(_differs, anyway=arguments.anyway, terminal=terminal)
-    check_versions(recipe, arguments.recipe, told)
+    if is_comparison(text, str(arguments.recipe)):
+        return _compare_again(text, arguments, terminal, told)
+    recipe = read_recipe(text, str(arguments.recipe))
+    check_folder(arguments.out)
+    check_versions(recipe.versions, arguments.recipe, told)
     path = find_source(recipe, arguments.recipe, told)
     given = read_input(path, recipe.weight, recipe.min_weight, strict=False, label=recipe.label)
     check_network(given.network, recipe, arguments.recipe, told)
@@ -58,18 +62,39 @@ def run(arguments: Namespace, terminal: Terminal) -> int:
     return 0
 
 
-def open_recipe(path: Path) -> Recipe:
-    """Read a recipe from its file."""
-    from analysis.handover import read_recipe
+def _compare_again(text: str, arguments: Namespace, terminal: Terminal, told: Callable[[InputError], None]) -> int:
+    """Find both folders, check that they are the same, and compare them again."""
+    from analysis.handover import check_folder
+    from analysis.handover.comparison_files import read_comparison_recipe
+    from app.comparing import compare_into, read_folder
+
+    path: Path = arguments.recipe
+    recipe = read_comparison_recipe(text, str(path))
+    check_folder(arguments.out)
+    check_versions(recipe.versions, path, told)
+    outputs = []
+    for asked in (recipe.first, recipe.second):
+        output = read_folder(path.resolve().parent / asked.path, asked.label)
+        if output.sha256 != asked.sha256:
+            remedy = "bring back its membership.csv and network.graphml as they were"
+            told(InputError(str(output.folder), "the clustering has changed since the recipe was written", remedy))
+        outputs.append(output)
+    compare_into(outputs[0], outputs[1], recipe.settings, arguments.out, terminal.progress(quiet=arguments.quiet))
+    if not arguments.quiet:
+        terminal.say(f"Written to {arguments.out}.")
+    return 0
+
+
+def recipe_text(path: Path) -> str:
+    """Read the text of a recipe."""
     from analysis.intake.opener import read_bytes
 
     try:
-        text = read_bytes(path, LARGEST_RECIPE).decode("utf-8-sig")
+        return read_bytes(path, LARGEST_RECIPE).decode("utf-8-sig")
     except UnicodeDecodeError:
         raise InputError(
             str(path), "this is not a recipe (no UTF-8 text)", "name the recipe.toml of an earlier run"
         ) from None
-    return read_recipe(text, str(path))
 
 
 def _differs(difference: InputError, *, anyway: bool, terminal: Terminal) -> None:
@@ -125,14 +150,14 @@ def find_source(recipe: Recipe, path: Path, told: Callable[[InputError], None]) 
     )
 
 
-def check_versions(recipe: Recipe, path: Path, told: Callable[[InputError], None]) -> None:
+def check_versions(written: Mapping[str, str], path: Path, told: Callable[[InputError], None]) -> None:
     """Tell which libraries have another version than when the recipe was written."""
     from analysis.version import versions
 
     here = versions()
     different = [
         f"{name} {there} (here {here.get(name, 'not known')})"
-        for name, there in recipe.versions.items()
+        for name, there in written.items()
         if here.get(name) != there
     ]
     if different:
