@@ -13,20 +13,25 @@ from analysis.errors import InputError
 from analysis.evidence import NOISY_COPIES, SUPPORT_COPIES, SUPPORT_STEPS, run_study
 from analysis.handover import (
     Bundle,
+    MeaningBundle,
     Source,
     SweepBundle,
     bundle_files,
     check_folder,
     check_parts,
+    meaning_bundle_files,
+    meaning_section,
     sweep_bundle_files,
     write_folder,
 )
 from analysis.intake import IntakeReport, read_network
+from analysis.meaning import Meaning, ModuleGenes
 from analysis.network import Network
 from analysis.progress import Progress, portion, silent
 from analysis.study import Study, StudySettings
 from analysis.trust.sweep import Sweep, SweepSettings, run_sweep
 from analysis.weight_cut import cut_by_weight
+from app.gene_set_files import MeaningFiles, meaning_from_files, read_membership, sha256_of
 
 
 @dataclass(frozen=True, eq=False)
@@ -111,14 +116,23 @@ def study_into(
     progress: Progress = silent,
     *,
     parts: Sequence[str] = (),
+    gene_sets: MeaningFiles | None = None,
 ) -> Study:
-    """Run a study and write everything into the folder `out`, whole or not at all; `parts` are keys of `EXTRAS`."""
+    """Run a study and write everything into the folder `out`, whole or not at all.
+
+    `parts` are keys of `EXTRAS`; with `gene_sets` the modules are tested for enrichment too.
+    """
     check_folder(out)
     check_parts(parts, settings)
     runs = settings.runs + settings.nulls + NOISY_COPIES + SUPPORT_STEPS * SUPPORT_COPIES
     with _computing(address, given.network, runs) as compute:
         study = run_study(given.network, settings, compute=compute, progress=portion(progress, 0.0, 0.9))
     bundle = Bundle(study, given.report, given.source(out), tuple(parts))
+    if gene_sets is not None:
+        meaning = meaning_from_files(ModuleGenes.of_study(study), gene_sets)
+        request = gene_sets.request(lambda path: _source(path, out))
+        sections = (*bundle.sections, meaning_section(meaning))
+        bundle = replace(bundle, meaning=meaning, meaning_request=request, sections=sections)
     write_folder(bundle_files(bundle, portion(progress, 0.9, 1.0)), out)
     return study
 
@@ -136,8 +150,28 @@ def sweep_into(
     return sweep
 
 
+def enrich_into(membership: Path, files: MeaningFiles, out: Path, progress: Progress = silent) -> tuple[Meaning, str]:
+    """Test the modules of a table and write the outcome into the folder `out`, whole or not at all.
+
+    Returns
+    -------
+    tuple of Meaning and str
+        The outcome, and a sentence on which genes are taken for the network's.
+    """
+    check_folder(out)
+    modules, note = read_membership(membership)
+    meaning = meaning_from_files(modules, files, portion(progress, 0.0, 0.9))
+    bundle = MeaningBundle(meaning, files.request(lambda path: _source(path, out)), _source(membership, out))
+    write_folder(meaning_bundle_files(bundle), out)
+    return meaning, note
+
+
+def _source(path: Path, out: Path) -> Source:
+    return Source(path.name, sha256_of(path), relative_path(path, out))
+
+
 def relative_path(path: Path, folder: Path) -> str:
-    """Return the way from a folder to a file or folder, with `/`; its name where there is no way, or none that stays."""
+    """Return the way from a folder to a file or folder, with `/`; its name where there is none, or none that stays."""
     if not (path.is_file() or path.is_dir()):
         return path.name
     try:

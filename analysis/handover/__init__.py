@@ -12,6 +12,14 @@ from analysis.handover.bundle import Bundle, Exporter, Section, Source, SweepBun
 from analysis.handover.figure_data import figure_data_files
 from analysis.handover.gene_lists import core_list_files, gene_list_files, set_line_file
 from analysis.handover.graph_file import graphml_file
+from analysis.handover.meaning_files import (
+    MeaningBundle,
+    meaning_bundle_files,
+    meaning_files,
+    meaning_section,
+)
+from analysis.handover.meaning_recipe import EnrichRecipe, MeaningRequest, read_enrich_recipe
+from analysis.handover.membership_reader import parse_membership
 from analysis.handover.recipe import Recipe, read_recipe, recipe_file
 from analysis.handover.report import map_pdf_file, map_svg_file, references_file, report_file
 from analysis.handover.summary import summary_file
@@ -26,7 +34,10 @@ __all__ = [
     "EXPORTS",
     "EXTRAS",
     "Bundle",
+    "EnrichRecipe",
     "Exporter",
+    "MeaningBundle",
+    "MeaningRequest",
     "Recipe",
     "Section",
     "Source",
@@ -36,6 +47,10 @@ __all__ = [
     "check_folder",
     "check_parts",
     "has_confidence",
+    "meaning_bundle_files",
+    "meaning_section",
+    "parse_membership",
+    "read_enrich_recipe",
     "read_recipe",
     "report_from_plain",
     "sweep_bundle_files",
@@ -52,6 +67,7 @@ EXPORTS: dict[str, Exporter] = {
     "report": report_file,
     "references": references_file,
     "network": graphml_file,
+    "enrichment": meaning_files,
 }
 """What is always written."""
 

@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING, Any
 
 from analysis.handover.bundle import Bundle, Section, Source
 from analysis.handover.csv_table import csv_bytes
-from analysis.handover.meaning_recipe import MeaningRequest, meaning_table
+from analysis.handover.meaning_recipe import ENRICH, MeaningRequest, meaning_table
 from analysis.handover.summary import json_bytes
 from analysis.meaning import (
     ENRICHMENT_CAUTION,
@@ -23,7 +23,6 @@ from analysis.version import versions
 if TYPE_CHECKING:
     import pandas as pd
 
-ENRICH = "enrich"
 CAUTIONS = (ENRICHMENT_CAUTION, LEVEL_CAUTION, SAME_SOURCE_UNKNOWN)
 SETS_A_MODULE = 3
 MODULES_SHOWN = 40

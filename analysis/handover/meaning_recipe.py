@@ -3,14 +3,15 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from typing import Any
 
 from analysis.errors import InputError, SettingError
 from analysis.handover.bundle import Source
-from analysis.handover.recipe_parts import AS_WRITTEN, refuse_unknown, table_of
+from analysis.handover.recipe_parts import AS_WRITTEN, parse_toml, refuse_unknown, table_of, texts_of
 from analysis.meaning.settings import MeaningSettings
 
+ENRICH = "enrich"
 MEANING = "meaning"
 FILES = ("gene_sets", "aliases", "ontology", "background")
 NUMBERS = ("min_size", "max_size", "min_module")
@@ -37,7 +38,49 @@ class MeaningRequest:
     background: Source | None = None
     evidence_out: tuple[str, ...] | None = None
     aspect: str | None = None
-    settings: MeaningSettings = MeaningSettings()
+    settings: MeaningSettings = field(default_factory=MeaningSettings)
+
+
+@dataclass(frozen=True)
+class EnrichRecipe:
+    """What the recipe of `corymb enrich` says.
+
+    Attributes
+    ----------
+    membership : Source
+        The table of modules.
+    meaning : MeaningRequest
+    versions : mapping of str to str
+    """
+
+    membership: Source
+    meaning: MeaningRequest
+    versions: Mapping[str, str]
+
+
+def read_enrich_recipe(text: str, where: str = "recipe.toml") -> EnrichRecipe | None:
+    """Return what a recipe of `corymb enrich` says; None where the recipe is of other work.
+
+    Raises
+    ------
+    InputError
+        Where it is no TOML, a part is missing or unknown, or a value is not of its kind.
+    """
+    content = parse_toml(text, where)
+    if content.get("work") != ENRICH:
+        return None
+    written = texts_of(content, "versions", where)
+    writer = written.get("corymb", "")
+    refuse_unknown(where, "the recipe", content, ("work", "membership", MEANING, "versions"), writer)
+    table = texts_of(content, "membership", where)
+    refuse_unknown(where, "[membership]", table, ("file", "sha256"), writer)
+    if missing := [key for key in ("file", "sha256") if key not in table]:
+        raise InputError(where, f"[membership] lacks {missing[0]!r}", AS_WRITTEN)
+    request = read_meaning(content, where, writer)
+    if request is None:
+        raise InputError(where, f"the part [{MEANING}] is missing", AS_WRITTEN)
+    path = table["file"]
+    return EnrichRecipe(Source(path.replace("\\", "/").rsplit("/", 1)[-1], table["sha256"], path), request, written)
 
 
 def meaning_table(request: MeaningRequest) -> dict[str, Any]:

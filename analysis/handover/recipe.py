@@ -8,7 +8,6 @@ from typing import Any
 
 from analysis.errors import InputError, SettingError
 from analysis.handover.bundle import Bundle, Source, SweepBundle
-from analysis.handover.meaning_files import ENRICH
 from analysis.handover.meaning_recipe import MEANING, MeaningRequest, meaning_table, read_meaning
 from analysis.handover.recipe_parts import Kinds, kinds_of, parse_toml, refuse_unknown, table_of, texts_of, values_of
 from analysis.intake.reading import label_of

@@ -10,6 +10,7 @@ from __future__ import annotations
 
 from analysis.meaning.enrichment import Enrichment, enrich
 from analysis.meaning.folding import Fold, fold
+from analysis.meaning.meaning import Meaning, find_meaning
 from analysis.meaning.modules import ModuleGenes
 from analysis.meaning.naming import Proposal, propose, title_of
 from analysis.meaning.sentences import (
@@ -36,12 +37,14 @@ __all__ = [
     "SPREAD_COLUMNS",
     "Enrichment",
     "Fold",
+    "Meaning",
     "MeaningSettings",
     "ModuleGenes",
     "Proposal",
     "Spread",
     "enrich",
     "enrichment_table",
+    "find_meaning",
     "fold",
     "module_sentence",
     "outcome_sentences",

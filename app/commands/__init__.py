@@ -6,6 +6,7 @@ from types import ModuleType
 
 from app.commands import (
     compare_clusterings,
+    enrich_modules,
     find_modules,
     inspect_network,
     open_dashboard,
@@ -15,6 +16,14 @@ from app.commands import (
 
 COMMANDS: dict[str, ModuleType] = {
     module.NAME: module
-    for module in (open_dashboard, inspect_network, find_modules, sweep_resolutions, compare_clusterings, rerun_recipe)
+    for module in (
+        open_dashboard,
+        inspect_network,
+        find_modules,
+        sweep_resolutions,
+        enrich_modules,
+        compare_clusterings,
+        rerun_recipe,
+    )
 }
 """Each has `NAME`, `HELP`, `add_arguments(parser)` and `run(arguments, terminal) -> int`."""

@@ -4,19 +4,23 @@ from __future__ import annotations
 
 from argparse import ArgumentParser, ArgumentTypeError, Namespace
 from dataclasses import fields
+from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 from analysis.errors import SettingError
 from app.commands.arguments import add_compute, add_network, add_out, add_quiet, add_weights, finite, whole
+from app.commands.enrich_modules import add_gene_sets, files_from
 from app.terminal import Terminal
 
 if TYPE_CHECKING:
     from analysis.study import StudySettings
+    from app.gene_set_files import MeaningFiles
     from app.pipeline import Input
 
 NAME = "modules"
 HELP = "one clustering with its evidence: tables, gene lists, report, recipe"
 
+GENE_SET_OPTIONS = ("aliases", "min_size", "max_size", "core_only", "aspect", "obo")
 CPM_RESOLUTION = 0.1
 """Default resolution of the constant Potts model, where 1, that of modularity, would leave nothing but cliques."""
 
@@ -61,6 +65,10 @@ def add_arguments(parser: ArgumentParser) -> None:
         help="write this too, once for each: tsv, xlsx, parquet, core-lists, set-lines, map-svg, map-pdf, figure-data",
     )
     add_weights(parser)
+    parser.add_argument(
+        "--gene-sets", metavar="FILE", type=Path, help="test the modules for enrichment in these gene sets too"
+    )
+    add_gene_sets(parser)
     add_compute(parser)
     add_quiet(parser)
 
@@ -71,17 +79,28 @@ def run(arguments: Namespace, terminal: Terminal) -> int:
     from analysis.handover import check_folder, check_parts
     from app.pipeline import read_input, study_into
 
+    gene_sets = gene_sets_from(arguments)
     parts = tuple(dict.fromkeys(arguments.also))
     check_parts(parts, settings)
     check_folder(arguments.out)
     progress = terminal.progress(quiet=arguments.quiet)
     given = read_input(arguments.network, settings.weight, settings.min_weight)
-    study = study_into(given, settings, arguments.out, arguments.compute, progress, parts=parts)
+    study = study_into(given, settings, arguments.out, arguments.compute, progress, parts=parts, gene_sets=gene_sets)
     if not arguments.quiet:
         for sentence in (*reading_sentences(given), *study.sentences):
             terminal.say(sentence)
         terminal.say(f"Written to {arguments.out}; begin with {arguments.out / 'report.html'}.")
     return 0
+
+
+def gene_sets_from(arguments: Namespace) -> MeaningFiles | None:
+    """Return the gene sets that are asked for; None where there are none."""
+    if arguments.gene_sets is not None:
+        return files_from(arguments)
+    given = [key for key in GENE_SET_OPTIONS if getattr(arguments, key) not in {None, False}]
+    if given:
+        raise SettingError(f"--{given[0].replace('_', '-')} belongs to --gene-sets; give both, or neither")
+    return None
 
 
 def settings_from(arguments: Namespace) -> StudySettings:

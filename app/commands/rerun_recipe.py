@@ -14,7 +14,7 @@ from app.commands.arguments import add_compute, add_out, add_quiet
 from app.terminal import Terminal
 
 if TYPE_CHECKING:
-    from analysis.handover import Recipe
+    from analysis.handover import EnrichRecipe, Recipe, Source
     from analysis.network import Network
 
 NAME = "rerun"
@@ -37,15 +37,19 @@ def add_arguments(parser: ArgumentParser) -> None:
 
 def run(arguments: Namespace, terminal: Terminal) -> int:
     """Find the recipe's network, check that it is the same, and do the work again."""
-    from analysis.handover import check_folder, read_recipe
+    from analysis.handover import check_folder, read_enrich_recipe, read_recipe
     from analysis.handover.comparison_files import is_comparison
     from analysis.study import StudySettings
+    from app.gene_set_files import MeaningFiles
     from app.pipeline import read_input, study_into, sweep_into
 
     text = recipe_text(arguments.recipe)
     told: Callable[[InputError], None] = partial(_differs, anyway=arguments.anyway, terminal=terminal)
     if is_comparison(text, str(arguments.recipe)):
         return _compare_again(text, arguments, terminal, told)
+    enrichment = read_enrich_recipe(text, str(arguments.recipe))
+    if enrichment is not None:
+        return _enrich_again(enrichment, arguments, terminal, told)
     recipe = read_recipe(text, str(arguments.recipe))
     check_folder(arguments.out)
     check_versions(recipe.versions, arguments.recipe, told)
@@ -54,7 +58,17 @@ def run(arguments: Namespace, terminal: Terminal) -> int:
     check_network(given.network, recipe, arguments.recipe, told)
     progress = terminal.progress(quiet=arguments.quiet)
     if isinstance(recipe.settings, StudySettings):
-        study_into(given, recipe.settings, arguments.out, arguments.compute, progress, parts=recipe.parts)
+        find = partial(find_file, path=arguments.recipe, told=told)
+        gene_sets = None if recipe.meaning is None else MeaningFiles.of_request(recipe.meaning, find)
+        study_into(
+            given,
+            recipe.settings,
+            arguments.out,
+            arguments.compute,
+            progress,
+            parts=recipe.parts,
+            gene_sets=gene_sets,
+        )
     else:
         sweep_into(given, recipe.settings, arguments.out, arguments.compute, progress)
     if not arguments.quiet:
@@ -80,6 +94,24 @@ def _compare_again(text: str, arguments: Namespace, terminal: Terminal, told: Ca
             told(InputError(str(output.folder), "the clustering has changed since the recipe was written", remedy))
         outputs.append(output)
     compare_into(outputs[0], outputs[1], recipe.settings, arguments.out, terminal.progress(quiet=arguments.quiet))
+    if not arguments.quiet:
+        terminal.say(f"Written to {arguments.out}.")
+    return 0
+
+
+def _enrich_again(
+    recipe: EnrichRecipe, arguments: Namespace, terminal: Terminal, told: Callable[[InputError], None]
+) -> int:
+    """Find the table of modules and the gene sets, check that they are the same, and test again."""
+    from analysis.handover import check_folder
+    from app.gene_set_files import MeaningFiles
+    from app.pipeline import enrich_into
+
+    check_folder(arguments.out)
+    check_versions(recipe.versions, arguments.recipe, told)
+    find = partial(find_file, path=arguments.recipe, told=told)
+    files = MeaningFiles.of_request(recipe.meaning, find)
+    enrich_into(find(recipe.membership), files, arguments.out, terminal.progress(quiet=arguments.quiet))
     if not arguments.quiet:
         terminal.say(f"Written to {arguments.out}.")
     return 0
@@ -117,7 +149,12 @@ def check_network(network: Network, recipe: Recipe, path: Path, told: Callable[[
 
 
 def find_source(recipe: Recipe, path: Path, told: Callable[[InputError], None]) -> Path:
-    """Return the recipe's network: where it was as seen from the recipe, or beside the recipe.
+    """Return the recipe's network; see `find_file`."""
+    return find_file(recipe.source, path, told, "the network's file")
+
+
+def find_file(source: Source, path: Path, told: Callable[[InputError], None], what: str = "the file") -> Path:
+    """Return a file of the recipe: where it was as seen from the recipe, or beside the recipe.
 
     A file that is not what it was is told of, and taken where that does not stop the work.
 
@@ -129,10 +166,10 @@ def find_source(recipe: Recipe, path: Path, told: Callable[[InputError], None]) 
     from analysis.intake.opener import read_bytes
 
     folder = path.resolve().parent
-    places = [folder / recipe.source.path, folder / recipe.source.name]
+    places = [folder / source.path, folder / source.name]
     there = [place for place in dict.fromkeys(places) if place.is_file()]
     for place in there:
-        if hashlib.sha256(read_bytes(place)).hexdigest() == recipe.source.sha256:
+        if hashlib.sha256(read_bytes(place)).hexdigest() == source.sha256:
             return place
     if there:
         told(
@@ -145,8 +182,8 @@ def find_source(recipe: Recipe, path: Path, told: Callable[[InputError], None]) 
         return there[0]
     raise InputError(
         str(path),
-        f"the network's file {recipe.source.path!r} is not there",
-        f"put {recipe.source.name!r} beside {path.name}",
+        f"{what} {source.path!r} is not there",
+        f"put {source.name!r} beside {path.name}",
     )
 
 

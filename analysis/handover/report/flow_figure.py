@@ -9,8 +9,8 @@ from analysis.colours import SMALL, module_colour
 from analysis.compare import Comparison
 from analysis.handover.report.markup import Markup, join, short, tag
 
-WIDTH, TOP, BOTTOM = 640.0, 34.0, 12.0
-BAR, SIDE, GAP = 14.0, 128.0, 5.0
+WIDTH, TOP, BOTTOM = 500.0, 34.0, 12.0
+BAR, SIDE, GAP = 14.0, 136.0, 5.0
 HEIGHT_OF_GENES = 420.0
 MOST = 18
 OTHERS, NOWHERE = "smaller ones", "no module"
@@ -47,8 +47,8 @@ def draw_flows(comparison: Comparison, *, most: int = MOST) -> Markup:
         _bands(flows, left, right, scale),
         _blocks(left, SIDE - BAR, SIDE - BAR - 6, "end"),
         _blocks(right, WIDTH - SIDE, WIDTH - SIDE + BAR + 6, "start"),
-        _head(comparison.first, SIDE, "end"),
-        _head(comparison.second, WIDTH - SIDE, "start"),
+        _head(comparison.first, 4, "start"),
+        _head(comparison.second, WIDTH - 4, "end"),
     ]
     return tag("svg", parts, viewBox=f"0 0 {WIDTH:.0f} {height:.0f}", role="img")
 
@@ -156,7 +156,7 @@ def _blocks(column: dict[str, Block], x: float, text_x: float, anchor: str) -> M
 
 
 def _head(label: str, x: float, anchor: str) -> Markup:
-    return tag("text", short(label, 34), x=x, y=18, text_anchor=anchor, font_weight="700", fill="#1d2a2f")
+    return tag("text", short(label, 36), x=x, y=18, text_anchor=anchor, font_weight="700", fill="#1d2a2f")
 
 
 def _colour(name: str) -> str:
