@@ -131,7 +131,7 @@ def test_every_file_of_the_science_and_the_app_is_told_of():
     told = re.findall(r"`([\w/*.-]+)`", section("Layout of the repository"))
     names = {Path(name).name for name in told} | {name.split("/")[0] for name in told}
     patterns = [re.escape(name).replace(r"\*", ".*") for name in names]
-    for folder in ("analysis", "analysis/trust", "app"):
+    for folder in ("analysis", "app"):
         for path in (ROOT / folder).iterdir():
             if path.name.startswith("__") or path.suffix not in {"", ".py"}:
                 continue
