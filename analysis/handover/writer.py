@@ -16,6 +16,8 @@ from analysis.errors import InputError
 
 MARKS = ("summary.json", "recipe.toml")
 """Files by which an earlier output is known."""
+PORTRAIT_MARK = "portrait.json"
+"""By which a portrait is known, which has no recipe."""
 
 OWN_FILES = (
     *MARKS,
@@ -47,6 +49,11 @@ OWN_FILES = (
     "matches.csv",
     "moved_genes.csv",
     "preservation.csv",
+    "portrait.json",
+    "summary.csv",
+    "hubs.csv",
+    "figures/*.svg",
+    "figure_data/*.csv",
 )
 """Patterns of everything that corymb writes into a folder; whatever else lies there belongs to somebody."""
 
@@ -114,7 +121,7 @@ def check_folder(out: Path) -> None:
         raise InputError(
             str(out), f"the folder holds something else ({foreign[0]!r})", "name a new folder, or empty this one"
         )
-    if content and not set(MARKS) <= set(content):
+    if content and not set(MARKS) <= set(content) and PORTRAIT_MARK not in content:
         raise InputError(
             str(out),
             f"the folder is no whole output of corymb ({content[0]!r})",

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field, replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -40,8 +40,8 @@ class Hubs:
         Publications of each, NaN where not given; None where none were given.
     correlation, p_value : float
         Spearman's rank correlation of degree and publications over the genes with both; NaN without.
-    counted : int
-        Genes with both.
+    all_degree, all_studied : float64 arrays, shape (counted,)
+        Degree and publications of every gene with both.
     """
 
     cut: int
@@ -54,7 +54,13 @@ class Hubs:
     studied: FloatArray | None = None
     correlation: float = float("nan")
     p_value: float = float("nan")
-    counted: int = 0
+    all_degree: FloatArray = field(default_factory=lambda: locked(np.zeros(0)))
+    all_studied: FloatArray = field(default_factory=lambda: locked(np.zeros(0)))
+
+    @property
+    def counted(self) -> int:
+        """Return how many genes have both."""
+        return len(self.all_degree)
 
     def sentence(self) -> str:
         """Say which genes these are and what hangs on them."""
@@ -128,19 +134,18 @@ def gather_hubs(
     """
     nodes, lost, giant = found
     degree = network.degree[nodes]
-    studied, correlation, p_value, counted = _study_bias(network, nodes, publications)
-    return Hubs(
-        int(degree.min()) if len(nodes) else 0,
-        locked(nodes),
-        locked(degree),
-        locked(core[nodes]),
-        locked(local[nodes]),
-        locked(lost),
-        locked(giant),
-        studied,
-        correlation,
-        p_value,
-        counted,
+    return _with_study(
+        network,
+        publications,
+        Hubs(
+            int(degree.min()) if len(nodes) else 0,
+            locked(nodes),
+            locked(degree),
+            locked(core[nodes]),
+            locked(local[nodes]),
+            locked(lost),
+            locked(giant),
+        ),
     )
 
 
@@ -196,18 +201,17 @@ def _giant_without(network: Network, node: int) -> int:
     return int(np.bincount(left).max(initial=0)) if len(left) else 0
 
 
-def _study_bias(
-    network: Network, nodes: NDArray[np.int64], publications: Mapping[str, float] | None
-) -> tuple[FloatArray | None, float, float, int]:
+def _with_study(network: Network, publications: Mapping[str, float] | None, hubs: Hubs) -> Hubs:
+    """Return the hubs with their publications, and how degree goes with them over all genes."""
     if publications is None:
-        return None, float("nan"), float("nan"), 0
+        return hubs
     studied = np.array([publications.get(name, np.nan) for name in network.names], np.float64)
     known = ~np.isnan(studied)
-    counted = int(known.sum())
-    hubs = locked(studied[nodes])
-    if counted < FEWEST or np.ptp(studied[known]) == 0 or np.ptp(network.degree[known]) == 0:
-        return hubs, float("nan"), float("nan"), counted
+    degree, counts = network.degree[known].astype(np.float64), studied[known]
+    found = replace(hubs, studied=locked(studied[hubs.nodes]), all_degree=locked(degree), all_studied=locked(counts))
+    if len(counts) < FEWEST or np.ptp(counts) == 0 or np.ptp(degree) == 0:
+        return found
     from scipy.stats import spearmanr
 
-    answer = spearmanr(network.degree[known], studied[known])
-    return hubs, float(answer.statistic), float(answer.pvalue), counted
+    answer = spearmanr(degree, counts)
+    return replace(found, correlation=float(answer.statistic), p_value=float(answer.pvalue))

@@ -10,6 +10,7 @@ from app.commands import (
     find_modules,
     inspect_network,
     open_dashboard,
+    portrait_network,
     rerun_recipe,
     sweep_resolutions,
 )
@@ -19,6 +20,7 @@ COMMANDS: dict[str, ModuleType] = {
     for module in (
         open_dashboard,
         inspect_network,
+        portrait_network,
         find_modules,
         sweep_resolutions,
         enrich_modules,
