@@ -3,18 +3,18 @@
 from __future__ import annotations
 
 import hashlib
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass, field
 from pathlib import Path
 
-from analysis.gene_sets import Aliases, read_aliases, read_gene_sets, read_ontology
+from analysis.gene_sets import Aliases, SetReading, match, read_aliases, read_gene_sets, read_ontology
 from analysis.handover import MeaningRequest, Source, parse_membership
 from analysis.handover.csv_table import unguarded
 from analysis.intake.decoding import decode
 from analysis.intake.opener import read_bytes
 from analysis.intake.unpacking import unpack
 from analysis.meaning import Meaning, MeaningSettings, ModuleGenes, find_meaning
-from analysis.progress import Progress, portion, silent
+from analysis.progress import Progress, silent
 
 BACKGROUND_BESIDE = Path("gene_lists") / "background.txt"
 """Where `corymb modules` writes all genes of the network, as seen from its membership.csv."""
@@ -75,8 +75,37 @@ class MeaningFiles:
         )
 
 
-def meaning_from_files(modules: ModuleGenes, files: MeaningFiles, progress: Progress = silent) -> Meaning:
-    """Read the files and test all modules.
+@dataclass(frozen=True, eq=False)
+class Opened:
+    """What the files of an enrichment hold.
+
+    Attributes
+    ----------
+    reading : SetReading
+    aliases : Aliases
+    background : list of str, or None
+    settings : MeaningSettings
+    """
+
+    reading: SetReading
+    aliases: Aliases
+    background: list[str] | None
+    settings: MeaningSettings
+
+    def meaning(self, modules: ModuleGenes, progress: Progress = silent) -> Meaning:
+        """Test all modules; see `find_meaning`."""
+        return find_meaning(
+            modules,
+            self.reading,
+            self.settings,
+            aliases=self.aliases,
+            background=self.background,
+            progress=progress,
+        )
+
+
+def open_files(genes: Sequence[str], files: MeaningFiles, progress: Progress = silent) -> Opened:
+    """Read the files, and make sure that the network's genes are among theirs.
 
     Raises
     ------
@@ -90,17 +119,13 @@ def meaning_from_files(modules: ModuleGenes, files: MeaningFiles, progress: Prog
         evidence_out=files.evidence_out,
         aspect=files.aspect,
         ontology=None if files.ontology is None else read_ontology(files.ontology),
-        known=frozenset(modules.genes),
-        progress=portion(progress, 0.0, 0.4),
+        known=frozenset(genes),
+        progress=progress,
     )
-    return find_meaning(
-        modules,
-        reading,
-        files.settings,
-        aliases=Aliases() if files.aliases is None else read_aliases(files.aliases),
-        background=None if files.background is None else read_gene_list(files.background),
-        progress=portion(progress, 0.4, 1.0),
-    )
+    aliases = Aliases() if files.aliases is None else read_aliases(files.aliases)
+    match(reading.sets, genes, aliases.joined(reading.synonyms))
+    background = None if files.background is None else read_gene_list(files.background)
+    return Opened(reading, aliases, background, files.settings)
 
 
 def read_membership(path: Path) -> tuple[ModuleGenes, str]:

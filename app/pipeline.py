@@ -9,7 +9,7 @@ from dataclasses import dataclass, replace
 from pathlib import Path
 
 from analysis.compute import Compute, open_compute
-from analysis.errors import InputError
+from analysis.errors import InputError, SettingError
 from analysis.evidence import NOISY_COPIES, SUPPORT_COPIES, SUPPORT_STEPS, run_study
 from analysis.handover import (
     Bundle,
@@ -19,6 +19,7 @@ from analysis.handover import (
     bundle_files,
     check_folder,
     check_parts,
+    has_confidence,
     meaning_bundle_files,
     meaning_section,
     sweep_bundle_files,
@@ -31,7 +32,7 @@ from analysis.progress import Progress, portion, silent
 from analysis.study import Study, StudySettings
 from analysis.trust.sweep import Sweep, SweepSettings, run_sweep
 from analysis.weight_cut import cut_by_weight
-from app.gene_set_files import MeaningFiles, meaning_from_files, read_membership, sha256_of
+from app.gene_set_files import MeaningFiles, open_files, read_membership, sha256_of
 
 
 @dataclass(frozen=True, eq=False)
@@ -124,12 +125,16 @@ def study_into(
     """
     check_folder(out)
     check_parts(parts, settings)
+    # read before the long work, so that a fault in the file is told at once
+    opened = None if gene_sets is None else open_files(given.network.names, gene_sets)
+    if gene_sets is not None and gene_sets.settings.core_only and not has_confidence(settings):
+        raise SettingError("--core-only needs to know how surely genes stay; give --noise above 0 or several --runs")
     runs = settings.runs + settings.nulls + NOISY_COPIES + SUPPORT_STEPS * SUPPORT_COPIES
     with _computing(address, given.network, runs) as compute:
         study = run_study(given.network, settings, compute=compute, progress=portion(progress, 0.0, 0.9))
     bundle = Bundle(study, given.report, given.source(out), tuple(parts))
-    if gene_sets is not None:
-        meaning = meaning_from_files(ModuleGenes.of_study(study), gene_sets)
+    if opened is not None and gene_sets is not None:
+        meaning = opened.meaning(ModuleGenes.of_study(study))
         request = gene_sets.request(lambda path: _source(path, out))
         sections = (*bundle.sections, meaning_section(meaning))
         bundle = replace(bundle, meaning=meaning, meaning_request=request, sections=sections)
@@ -160,7 +165,8 @@ def enrich_into(membership: Path, files: MeaningFiles, out: Path, progress: Prog
     """
     check_folder(out)
     modules, note = read_membership(membership)
-    meaning = meaning_from_files(modules, files, portion(progress, 0.0, 0.9))
+    opened = open_files(modules.genes, files, portion(progress, 0.0, 0.4))
+    meaning = opened.meaning(modules, portion(progress, 0.4, 0.9))
     bundle = MeaningBundle(meaning, files.request(lambda path: _source(path, out)), _source(membership, out))
     write_folder(meaning_bundle_files(bundle), out)
     return meaning, note

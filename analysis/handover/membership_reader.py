@@ -45,22 +45,21 @@ def parse_membership(data: bytes, source: str, others: Sequence[str] = ()) -> Mo
     header = [cell.strip() for cell in next(reader, [])]
     if missing := [name for name in (GENE, MODULE) if name not in header]:
         raise InputError(source, f"there is no column {missing[0]!r}", WANTED, 1)
-    genes: dict[str, int] = {}
-    members: dict[str, dict[int, float]] = {}
+    members: dict[str, dict[str, float]] = {}
     for cells in reader:
         if not any(cell.strip() for cell in cells):
             continue
         gene, module, confidence = _row(cells, header, source, reader.line_num)
-        members.setdefault(module, {})[genes.setdefault(gene, len(genes))] = confidence
+        members.setdefault(module, {})[gene] = confidence
     if not members:
         raise InputError(source, "the table has no rows", WANTED)
-    for gene in others:
-        genes.setdefault(gene, len(genes))
+    genes = sorted({gene for group in members.values() for gene in group} | set(others))  # as a network has them
+    place = {gene: index for index, gene in enumerate(genes)}
     rows = [sorted(group.items()) for group in members.values()]
     return ModuleGenes(
         tuple(genes),
         tuple(members),
-        tuple(locked(np.array([gene for gene, _ in row], np.int32)) for row in rows),
+        tuple(locked(np.array([place[gene] for gene, _ in row], np.int32)) for row in rows),
         tuple(locked(np.array([value for _, value in row], np.float64)) for row in rows),
     )
 

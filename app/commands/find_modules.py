@@ -89,6 +89,8 @@ def run(arguments: Namespace, terminal: Terminal) -> int:
     if not arguments.quiet:
         for sentence in (*reading_sentences(given), *study.sentences):
             terminal.say(sentence)
+        if gene_sets is not None:
+            terminal.say(f"Enrichment in {arguments.gene_sets.name} stands in enrichment.csv and in the report.")
         terminal.say(f"Written to {arguments.out}; begin with {arguments.out / 'report.html'}.")
     return 0
 
