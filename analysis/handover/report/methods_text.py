@@ -22,7 +22,22 @@ def methods_sentences(bundle: Bundle) -> list[str]:
         *_noise(study),
         *_figures(study),
         *_nulls(study),
+        *_enrichment(bundle),
         _software(),
+    ]
+
+
+def _enrichment(bundle: Bundle) -> list[str]:
+    if bundle.meaning is None:
+        return []
+    found = bundle.meaning.enrichment
+    which = "a list that was given" if bundle.meaning.background_given else "the genes of the network that they know"
+    trimmed = ", trimmed to their cores," if found.settings.core_only else ""
+    return [
+        f"Modules{trimmed} were tested for enrichment in the {count(len(found.sets), 'gene set')} of "
+        f"{found.sets.label} that have {found.settings.min_size} to {found.settings.max_size} genes in the background, "
+        f"{which} ({count(found.background, 'gene')}), by the one-sided hypergeometric test; p-values were corrected over all "
+        f"{count(found.tests, 'test')} [bh]."
     ]
 
 

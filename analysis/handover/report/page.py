@@ -7,6 +7,7 @@ from dataclasses import replace
 import numpy as np
 
 from analysis.handover.bundle import Bundle
+from analysis.handover.report.chapter import chapter
 from analysis.handover.report.charts import confidence_chart, null_chart, size_chart
 from analysis.handover.report.citations import cited
 from analysis.handover.report.map_figure import draw_map
@@ -57,6 +58,7 @@ def report_page(bundle: Bundle, positions: FloatArray) -> str:
             _map(study, positions),
             _trust(study),
             _modules(study),
+            [chapter(section) for section in bundle.sections],
             _cautions(),
             _read(bundle),
             _methods(bundle),
