@@ -36,8 +36,8 @@ def _enrichment(bundle: Bundle) -> list[str]:
     return [
         f"Modules{trimmed} were tested for enrichment in the {count(len(found.sets), 'gene set')} of "
         f"{found.sets.label} that have {found.settings.min_size} to {found.settings.max_size} genes in the background, "
-        f"{which} ({count(found.background, 'gene')}), by the one-sided hypergeometric test; p-values were corrected over all "
-        f"{count(found.tests, 'test')} [bh]."
+        f"{which} ({count(found.background, 'gene')}), by the one-sided hypergeometric test; p-values were "
+        f"corrected over all {count(found.tests, 'test')} [bh]."
     ]
 
 
