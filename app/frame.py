@@ -61,6 +61,7 @@ def _stores() -> list[Any]:
         # written by the page's own scripts
         dcc.Store(id="from-upload", storage_type="memory"),
         dcc.Store(id="from-map", storage_type="memory"),
+        dcc.Store(id="from-pane", storage_type="memory"),
         dcc.Store(id="from-ruler", storage_type="memory"),
         dcc.Store(id="done-here", storage_type="memory"),
         dcc.Interval(id="tick", interval=TICK_MILLISECONDS, disabled=False),

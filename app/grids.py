@@ -27,10 +27,10 @@ def module_grid(study: Study, hues: Sequence[int]) -> Any:
         row["id"] = str(position)
     columns = [
         _column("module", "module", 96, cellRenderer="ModuleCell", comparator={"function": "corymbByNumber"}),
-        _column("name", "name", 110, filter="agTextColumnFilter"),
-        _number("size", "size", 74, 0),
-        _number("stability", "stability", 92),
-        _number("support", "support", 88),
+        _column("name", "name", 98, filter="agTextColumnFilter"),
+        _number("size", "size", 72, 0),
+        _number("stability", "stability", 94),
+        _number("support", "support", 92),
         _number("internal_density", "density", 86),
         _number("conductance", "conductance", 112),
         _number("evidence", "evidence", 92),
@@ -46,11 +46,11 @@ def gene_grid(study: Study) -> Any:
     for row in rows:
         row["id"] = f"{row['gene']}\t{row['module']}"
     columns = [
-        _column("gene", "gene", 100, filter="agTextColumnFilter"),
+        _column("gene", "gene", 92, filter="agTextColumnFilter"),
         _column("module", "module", 90, filter="agTextColumnFilter", comparator={"function": "corymbByNumber"}),
-        _number("confidence", "stays here", 100),
-        _column("second_module", "second home", 108),
-        _number("degree", "degree", 82, 0),
+        _number("confidence", "stays here", 106),
+        _column("second_module", "second home", 124),
+        _number("degree", "degree", 88, 0),
         _column("role", "role", 140, filter="agTextColumnFilter"),
     ]
     return _grid("gene-grid", columns, rows, "params.data.id")
@@ -70,7 +70,11 @@ def _grid(grid_id: str, columns: list[dict[str, Any]], rows: list[dict[Hashable,
             "animateRows": False,
             "rowSelection": {"mode": "singleRow", "checkboxes": False, "enableClickSelection": True},
             "theme": {"function": THEME},
+            # Tab leaves the table; inside it the arrow keys move. Enter opens what a click opens.
+            "tabToNextHeader": {"function": "corymbLeave(params)"},
+            "tabToNextCell": {"function": "corymbLeave(params)"},
         },
+        eventListeners={"cellKeyDown": ["corymbOpen(params, setGridProps)"]},
         style={"height": "300px", "width": "100%"},
     )
 

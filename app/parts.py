@@ -2,21 +2,28 @@
 
 from __future__ import annotations
 
+import json
 import math
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
 from typing import Any
 from urllib.parse import quote
 
 from dash import html
+from dash.development.base_component import Component
 
 from app.map.colours import GREY, PALETTE
 
 NOTHING = "–"
+PICKS = frozenset({"pick-gene", "pick-module"})
+"""Types of the ids of links, in tables only, that open a passport."""
+SMALL = 1e-4
+"""From here down figures are written with an exponent."""
 
 
 def sentence(text: str, *, first: bool = False) -> html.P:
     """Return a sentence; the first one is the verdict, set larger."""
-    return html.P(text, className="verdict" if first else "hint sentence")
+    unbroken = text.replace(" %", "\u00a0%")
+    return html.P(unbroken, className="verdict" if first else "hint sentence")
 
 
 def sentences(texts: Sequence[str]) -> list[html.P]:
@@ -53,12 +60,14 @@ def bar(value: float, *, doubt: bool = False) -> html.Span:
 
 
 def number(value: float | None, digits: int = 2) -> str:
-    """Return a figure for the screen, a dash where it is missing."""
+    """Return a figure for the screen, a dash where it is missing; small ones keep two figures that count."""
     if value is None or (isinstance(value, float) and math.isnan(value)):
         return NOTHING
     if isinstance(value, int) or (float(value).is_integer() and abs(value) >= 10):
         return f"{int(value):,}"
-    return f"{value:.{digits}f}" if abs(value) >= 10**-digits or value == 0 else f"{value:.1e}"
+    if abs(value) >= 10**-digits or value == 0:
+        return f"{value:.{digits}f}"
+    return f"{value:.2g}" if abs(value) >= SMALL else f"{value:.1e}"
 
 
 def button(text: str, part_id: Any, *, kind: str = "button", **extra: Any) -> html.Button:
@@ -71,8 +80,34 @@ def link(text: str, part_id: Any) -> html.Button:
     return button(text, part_id, kind="link")
 
 
-def table(head: Sequence[str], rows: Sequence[Sequence[Any]], *, numeric: Sequence[int] = (), name: str) -> html.Table:
-    """Return a plain table; `numeric` names the columns that are set to the right."""
+def table(head: Sequence[str], rows: Sequence[Sequence[Any]], *, numeric: Sequence[int] = (), name: str) -> Component:
+    """Return a plain table; `numeric` names the columns that are set to the right.
+
+    Where all that can be pressed in it are genes and modules, it is a single component that `assets/tables.js` turns
+    into the table: Dash needs seconds for some hundred rows made of components.
+    """
+    whole = _table(head, rows, numeric=numeric, name=name)
+    if any(part.id["type"] not in PICKS for part in _parts(whole) if getattr(part, "id", None)):
+        return whole
+    return html.Div(**{"data-table": json.dumps(whole, default=_plain)})
+
+
+def _plain(part: Component) -> dict[str, Any]:
+    written = part.to_plotly_json()
+    return {"type": written["type"], "props": written["props"]}
+
+
+def _parts(part: Any) -> Iterator[Component]:
+    """Return a component and all inside it."""
+    if isinstance(part, list | tuple):
+        for each in part:
+            yield from _parts(each)
+    elif isinstance(part, Component):
+        yield part
+        yield from _parts(getattr(part, "children", None))
+
+
+def _table(head: Sequence[str], rows: Sequence[Sequence[Any]], *, numeric: Sequence[int], name: str) -> html.Table:
 
     def cell(kind: Any, position: int, content: Any) -> Any:
         extra = {"scope": "col"} if kind is html.Th else {}

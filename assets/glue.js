@@ -106,7 +106,7 @@
     text("state-count", `${count} modules, ${large.toLocaleString("en")} of ${state.sizeCut} genes or more`);
   }
 
-  const rulerUrl = (index) => `/data/${state.ruler.network}/ruler/${state.ruler.quality}/${index}?v=${state.ruler.version}`;
+  const rulerUrl = (ruler, index) => `/data/${ruler.network}/ruler/${ruler.quality}/${index}?v=${ruler.version}`;
 
   /** Fetches the partitions of the ruler ahead, nearest to the marker first, so that the marker never waits. */
   async function fetchAhead() {
@@ -116,8 +116,8 @@
     const here = nearest(ruler.grid, state.wanted ? state.wanted.resolution : 1);
     const order = ruler.grid.map((_, index) => index).sort((a, b) => Math.abs(a - here) - Math.abs(b - here));
     for (const index of order) {
-      if (turn !== state.turn) return;
-      if (ruler.modules[index] !== null) await colours(rulerUrl(index));
+      if (turn !== state.turn || state.ruler !== ruler) return;
+      if (ruler.modules[index] !== null) await colours(rulerUrl(ruler, index));
     }
   }
 
@@ -137,12 +137,13 @@
 
   async function preview(index) {
     if (index < 0) return;
+    const { ruler } = state; // another may take its place while we wait
     await state.loaded;
     const turn = (state.previews += 1);
-    const decoded = await colours(rulerUrl(index));
-    if (!decoded || turn !== state.previews) return;
+    const decoded = await colours(rulerUrl(ruler, index));
+    if (!decoded || turn !== state.previews || state.network !== `/data/${ruler.network}`) return;
     paint(decoded, {});
-    describe(decoded, state.ruler.grid[index]);
+    describe(decoded, ruler.grid[index]);
   }
 
   // --- called by Dash ------------------------------------------------------------------------------------------
@@ -154,7 +155,7 @@
       state.cache.clear();
       state.shown = null;
       state.painted = null;
-      state.ruler = null;
+      if (state.ruler?.network !== order.fingerprint) state.ruler = null; // the ruler's data may come before the map's
       state.loaded = Promise.all([
         window.corymb.map.load({ url: order.url, names: null, label: order.label }),
         fetch(`${order.url}/degrees`)
@@ -212,7 +213,9 @@
       const optimised = wanted.method === "leiden" || wanted.method === "louvain";
       const answered =
         shown && ["network", "method", "quality", "resolution"].every((key) => shown[key] === wanted[key]);
-      if (optimised && !answered && !state.dragging) preview(nearestReady(data, wanted.resolution));
+      const ready = nearestReady(data, wanted.resolution);
+      const isNear = ready >= 0 && Math.abs(ready - nearest(data.grid, wanted.resolution)) <= 1;
+      if (optimised && !answered && !state.dragging && isNear) preview(ready);
       return noUpdate();
     },
 
@@ -231,6 +234,7 @@
       window.setTimeout(() => {
         const cy = document.getElementById("closeup")?._cyreg?.cy;
         if (!cy) return;
+        dress(cy);
         cy.resize();
         cy.fit(undefined, 40);
       }, 60);
@@ -250,6 +254,7 @@
 
     theme(clicks) {
       if (clicks) remember("theme", document.documentElement.dataset.theme === "dark" ? "light" : "dark");
+      dress(document.getElementById("closeup")?._cyreg?.cy);
       return noUpdate();
     },
 
@@ -258,6 +263,23 @@
       return noUpdate();
     },
   };
+
+  /** Puts the colours of the theme at hand on the close-up. */
+  function dress(cy) {
+    const { theme } = document.documentElement.dataset;
+    if (!cy || cy.scratch("theme") === (theme || "light")) return;
+    cy.scratch("theme", theme || "light");
+    const list = getComputedStyle(document.documentElement);
+    const colour = (name) => list.getPropertyValue(name).trim();
+    const [ink, soft, paper, line] = ["--ink", "--ink-soft", "--paper", "--module-grey"].map(colour);
+    cy.style()
+      .selector("node").style({ color: ink, "text-background-color": paper, "border-color": paper })
+      .selector("node.outside").style({ color: soft, "background-blacken": theme === "dark" ? 0.45 : -0.5 })
+      .selector("node.centre, node:selected").style({ "border-color": ink })
+      .selector("edge").style({ "line-color": line })
+      .selector("edge.inside").style({ "line-color": soft })
+      .update();
+  }
 
   async function confidence(url, on) {
     text("legend-text", `colour: ${on ? "how surely it stays" : "module"} · size: degree · grey: modules under `);
@@ -374,6 +396,12 @@
   const numberOf = (value) => Number(String(value ?? "").replace(/^M/, "")) || 0;
   window.dashAgGridFunctions = window.dashAgGridFunctions || {};
   window.dashAgGridFunctions.corymbByNumber = (one, other) => numberOf(one) - numberOf(other);
+  window.dashAgGridFunctions.corymbLeave = () => false;
+  window.dashAgGridFunctions.corymbOpen = (params, setGridProps) => {
+    if (params.event.key !== "Enter") return;
+    const { value, column, rowIndex, node } = params;
+    setGridProps({ cellClicked: { value, colId: column.getColId(), rowIndex, rowId: node.id, timestamp: Date.now() } });
+  };
   window.dashAgGridComponentFunctions = window.dashAgGridComponentFunctions || {};
   window.dashAgGridComponentFunctions.ModuleCell = (props) =>
     window.React.createElement("span", null, [

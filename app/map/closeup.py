@@ -17,6 +17,7 @@ EDGES_SHOWN = 2500
 SPREAD = 30.0
 RING = 52.0
 
+# The light theme's colours; `assets/glue.js` puts those of the theme at hand over them.
 STYLESHEET: list[dict[str, Any]] = [
     {
         "selector": "node",
@@ -38,7 +39,7 @@ STYLESHEET: list[dict[str, Any]] = [
             "min-zoomed-font-size": 7,
         },
     },
-    {"selector": "node.outside", "style": {"background-opacity": 0.45, "color": "#5a6a70"}},
+    {"selector": "node.outside", "style": {"background-blacken": -0.5, "color": "#5a6a70"}},
     {"selector": "node.centre", "style": {"border-width": 3, "border-color": "#1d2a2f", "font-weight": "bold"}},
     {"selector": "edge", "style": {"width": "data(width)", "line-color": "#9aa5a3", "opacity": 0.55}},
     {"selector": "edge.inside", "style": {"line-color": "#5a6a70", "opacity": 0.75}},

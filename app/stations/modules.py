@@ -11,7 +11,7 @@ from analysis.evidence import HARVEST
 from analysis.study import Study
 from analysis.verdicts import STRUCTURE_CAUTION
 from app.grids import gene_grid, module_grid
-from app.parts import button, fault, field, heading, notice, number, sentence, sentences, table
+from app.parts import button, field, heading, link, notice, number, sentence, sentences, table
 from app.ruler import QUESTIONS
 from app.view import Pane, View
 
@@ -30,6 +30,8 @@ METHOD_SENTENCES = {
     HARVEST: "Modules each at its own resolution from a whole sweep, best supported first; genes in none are left out.",
 }
 TRAIL_SHOWN = 30
+PIN_SENTENCE = "Pin two clusterings to compare them; a pin stays when another network is opened."
+MODULE_TABLE, GENE_TABLE = TABLES = ("modules", "genes")
 
 
 def state(view: View) -> str:
@@ -41,29 +43,32 @@ def state(view: View) -> str:
 
 def render(view: View) -> Pane:
     """Return the verdict, the tables of modules and genes, the method's settings and the trail."""
-    body: list[Any] = [fault(view.fault)] if view.fault else []
     if view.study is None:
-        body.append(sentence("The modules are being worked out.", first=True))
-        return Pane(TITLE, [*body, *_settings(view)], [])
+        return Pane(TITLE, [sentence("The modules are being worked out.", first=True), *_settings(view)], [])
     study = view.study
-    body += sentences(_brief(study))
-    body.append(notice(STRUCTURE_CAUTION))
-    body += [
-        dcc.Tabs(
-            [
-                dcc.Tab(module_grid(study, view.hues()), label="modules", value="modules"),
-                dcc.Tab(gene_grid(study), label="genes", value="genes"),
-            ],
-            value="modules",
-            className="tabs",
+    body: list[Any] = [
+        *sentences(_brief(study)),
+        notice(STRUCTURE_CAUTION),
+        dcc.RadioItems(
+            list(TABLES),
+            MODULE_TABLE,
+            id="table-kind",
+            className="segments",
             persistence=True,
             persistence_type="session",
-            id="tables",
-        )
+        ),
+        html.Div(id="table-area"),  # filled by a callback, so that only the table that is seen is made
+        *_settings(view),
+        *_trail(view),
     ]
-    body += _settings(view)
-    body += _trail(view)
     return Pane(TITLE, body, [button("Hand over genes", {"type": "go", "station": "handover"}, kind="button primary")])
+
+
+def table_of(view: View, kind: str | None) -> Any:
+    """Return the table of modules or of genes, nothing before there is a clustering."""
+    if view.study is None:
+        return []
+    return gene_grid(view.study) if kind == GENE_TABLE else module_grid(view.study, view.hues())
 
 
 def _brief(study: Study) -> list[str]:
@@ -115,17 +120,18 @@ def _trail(view: View) -> list[Any]:
     rows = [
         [
             html.Span(
-                button(entry.name or _line(entry.settings), {"type": "return-to", "study": entry.id}, kind="link"),
+                link(entry.name or clustering_line(entry.settings), {"type": "return-to", "study": entry.id}),
                 **({"aria-current": "true"} if entry.id == view.study_id else {}),
             ),
             f"{entry.figures['modules']:,}",
             number(entry.figures["modularity"], 3),
             number(entry.figures["noise_ami"]),
+            button("pin", {"type": "pin-clustering", "study": entry.id}, kind="link", **{"aria-pressed": "false"}),
         ]
         for entry in reversed(entries[-TRAIL_SHOWN:])
     ]
-    head = ["clustering", "modules", "modularity", "noise AMI"]
-    return [heading("Trail"), table(head, rows, numeric=[1, 2, 3], name="Trail of clusterings")]
+    head = ["clustering", "modules", "modularity", "noise AMI", "compare"]
+    return [heading("Trail"), sentence(PIN_SENTENCE), table(head, rows, numeric=[1, 2, 3], name="Trail of clusterings")]
 
 
 def _distinct(entries: list[Any]) -> list[Any]:
@@ -137,7 +143,7 @@ def _distinct(entries: list[Any]) -> list[Any]:
     return list(kept.values())
 
 
-def _line(settings: Any) -> str:
+def clustering_line(settings: Any) -> str:
     """Return the settings of a clustering in one line."""
     label = METHOD_LABELS.get(settings["method"], settings["method"])
     if settings["method"] == "clique-percolation":

@@ -11,9 +11,10 @@ from app.desk import Desk
 from app.frame import WANTED
 from app.keys import keys_pane
 from app.listing import listing
-from app.parts import link
+from app.parts import fault, link
 from app.passports import gene_passport, module_passport
-from app.stations import START, STATIONS
+from app.stations import START, STATIONS, intake
+from app.stations.modules import table_of
 from app.view import Pane, View
 from app.wiring.triggers import pressed
 
@@ -24,6 +25,7 @@ def wire(app: Dash, desk: Desk) -> None:
     @app.callback(
         Output("station", "data"),
         Output("pick", "data", allow_duplicate=True),
+        Output("fault", "data", allow_duplicate=True),
         Input({"type": "go", "station": ALL}, "n_clicks"),
         Input({"type": "back", "index": ALL}, "n_clicks"),
         Input({"type": "keys", "index": ALL}, "n_clicks"),
@@ -31,12 +33,12 @@ def wire(app: Dash, desk: Desk) -> None:
     )
     def go(_clicks: Any, _back: Any, _keys: Any) -> Any:
         if pressed("go"):
-            return ctx.triggered_id["station"], None
+            return ctx.triggered_id["station"], None, ""
         if pressed("back"):
-            return no_update, None
+            return no_update, None, no_update
         if pressed("keys"):
-            return no_update, {"kind": "keys"}
-        return no_update, no_update
+            return no_update, {"kind": "keys"}, no_update
+        return no_update, no_update, no_update
 
     @app.callback(
         Output("pane-head", "children"),
@@ -75,7 +77,18 @@ def wire(app: Dash, desk: Desk) -> None:
         targets = [each["id"]["station"] for each in ctx.outputs_list[3]]
         states = [STATIONS[key].state(view) if key in STATIONS else "empty" for key in targets]
         current = ["page" if key == place else None for key in targets]
-        return _crumbs(place, pane, pick), pane.body, pane.actions, states, current
+        # Intake shows a fault beside the place where files are dropped, which is at its own head.
+        told = [fault(message)] if message and pane.title != intake.TITLE else []
+        return _crumbs(place, pane, pick), [*told, *pane.body], pane.actions, states, current
+
+    @app.callback(
+        Output("table-area", "children"),
+        Input("table-kind", "value"),
+        State("at-hand", "data"),
+        State("shown", "data"),
+    )
+    def fill_table(kind: str | None, fingerprint: str | None, shown: Any) -> Any:
+        return table_of(_view(desk, fingerprint, shown, None, ""), kind)
 
 
 def _view(desk: Desk, fingerprint: str | None, shown: Any, wanted: Any, message: str) -> View:

@@ -4,11 +4,10 @@ from __future__ import annotations
 
 from typing import Any
 
-from dash import ALL, Dash, Input, Output, State, ctx, no_update
+from dash import Dash, Input, Output, State, no_update
 
 from app.desk import Desk
 from app.find import find
-from app.wiring.triggers import pressed
 
 
 def wire(app: Dash, desk: Desk) -> None:
@@ -17,21 +16,27 @@ def wire(app: Dash, desk: Desk) -> None:
     @app.callback(
         Output("pick", "data", allow_duplicate=True),
         Input("from-map", "data"),
-        Input({"type": "pick-module", "index": ALL}, "n_clicks"),
-        Input({"type": "pick-gene", "gene": ALL}, "n_clicks"),
+        prevent_initial_call=True,
+    )
+    def pick(picked: Any) -> Any:
+        if not picked:
+            return no_update
+        known = ("kind", "index", "leader")
+        return None if picked["kind"] == "nothing" else {key: picked[key] for key in known if key in picked}
+
+    @app.callback(
+        Output("pick", "data", allow_duplicate=True),
+        Input("from-pane", "data"),
         State("at-hand", "data"),
         State("shown", "data"),
         prevent_initial_call=True,
     )
-    def pick(picked: Any, _modules: Any, _genes: Any, fingerprint: str | None, shown: Any) -> Any:
-        if ctx.triggered_id == "from-map" and picked:
-            known = ("kind", "index", "leader")
-            return None if picked["kind"] == "nothing" else {key: picked[key] for key in known if key in picked}
-        if pressed("pick-module"):
-            return module_pick(desk, shown, int(ctx.triggered_id["index"]))
-        if pressed("pick-gene") and fingerprint:
-            return {"kind": "gene", "index": desk.network(fingerprint).index[ctx.triggered_id["gene"]]}
-        return no_update
+    def pick_in_table(picked: Any, fingerprint: str | None, shown: Any) -> Any:
+        if not picked or not fingerprint:
+            return no_update
+        if picked["type"] == "pick-module":
+            return module_pick(desk, shown, int(picked["index"]))
+        return {"kind": "gene", "index": desk.network(fingerprint).index[picked["gene"]]}
 
     @app.callback(
         Output("pick", "data", allow_duplicate=True),
@@ -59,12 +64,13 @@ def wire(app: Dash, desk: Desk) -> None:
 
     @app.callback(
         Output("pick", "data", allow_duplicate=True),
-        Input("find", "value"),
+        Input("find", "n_submit"),
+        State("find", "value"),
         State("at-hand", "data"),
         State("shown", "data"),
         prevent_initial_call=True,
     )
-    def type_in(text: str | None, fingerprint: str | None, shown: Any) -> Any:
+    def type_in(_submits: Any, text: str | None, fingerprint: str | None, shown: Any) -> Any:
         if not text or not text.strip() or not fingerprint:
             return no_update
         study = desk.study(shown["study"]) if shown else None
