@@ -75,6 +75,9 @@ def _grid(grid_id: str, columns: list[dict[str, Any]], rows: list[dict[Hashable,
             "tabToNextCell": {"function": "corymbLeave(params)"},
         },
         eventListeners={"cellKeyDown": ["corymbOpen(params, setGridProps)"]},
+        persistence=True,
+        persistence_type="session",
+        persisted_props=["filterModel", "columnState"],
         style={"height": "300px", "width": "100%"},
     )
 

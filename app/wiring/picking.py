@@ -16,13 +16,15 @@ def wire(app: Dash, desk: Desk) -> None:
     @app.callback(
         Output("pick", "data", allow_duplicate=True),
         Input("from-map", "data"),
+        State("pick", "data"),
         prevent_initial_call=True,
     )
-    def pick(picked: Any) -> Any:
+    def pick(picked: Any, before: Any) -> Any:
         if not picked:
             return no_update
-        known = ("kind", "index", "leader")
-        return None if picked["kind"] == "nothing" else {key: picked[key] for key in known if key in picked}
+        if picked["kind"] == "nothing":  # the pane is left alone where nothing was picked before either
+            return no_update if before is None else None
+        return {key: picked[key] for key in ("kind", "index", "leader") if key in picked}
 
     @app.callback(
         Output("pick", "data", allow_duplicate=True),
