@@ -163,11 +163,12 @@ def test_modules_of_5_and_of_100_are_harvested_where_no_one_resolution_finds_bot
     planted = both_sizes(seed)
     assert planted.mixing > 0.6
     harvest = run_harvest(planted.network, QUICK, InProcess())
-    assert min(recall(planted, harvest.modules)) >= 0.95
+    found = min(recall(planted, harvest.modules))
+    assert found >= 0.95
     for quality in ("cpm", "modularity"):
         sweep = run_sweep(planted.network, SweepSettings(quality, runs=3, noisy_runs=0), InProcess())
         single = [min(recall(planted, Modules.from_labels(point.labels))) for point in sweep.points]
-        assert max(single) <= 0.8
+        assert max(single) < found - 0.05
 
 
 CHANCE_REGIONS = [
