@@ -7,9 +7,7 @@ import hashlib
 import json
 import multiprocessing
 import os
-import shutil
 import sys
-import tempfile
 import threading
 import weakref
 from collections import deque
@@ -25,6 +23,7 @@ from analysis.errors import Cancelled, ComputeError
 from analysis.network import Network
 from analysis.network_files import store_network
 from analysis.progress import Progress, silent
+from analysis.temporary_folder import TemporaryFolder
 
 if TYPE_CHECKING:
     from analysis.compute import Task
@@ -86,7 +85,7 @@ class LocalProcesses:
         self.workers = workers or processors()
         self._context = multiprocessing.get_context("spawn")
         self._pool: list[_Worker] = []
-        self._folder: Path | None = None
+        self._folder: TemporaryFolder | None = None
         self._lock = threading.Lock()
         self._reader: int | None = None
         self._closed = False
@@ -128,7 +127,7 @@ class LocalProcesses:
             _end(self._pool)
             self._pool = []
             if self._folder is not None:
-                shutil.rmtree(self._folder, ignore_errors=True)
+                self._folder.remove()
                 self._folder = None
         finally:
             if held:
@@ -176,10 +175,10 @@ class LocalProcesses:
     def _store(self, network: Network) -> Path:
         """Write the network once; workers map its arrays."""
         if self._folder is None:
-            self._folder = Path(tempfile.mkdtemp(prefix="corymb-"))
-            weakref.finalize(self, shutil.rmtree, self._folder, ignore_errors=True)
+            self._folder = TemporaryFolder.make()
+            weakref.finalize(self, self._folder.remove)
         words = json.dumps([network.label, sorted(network.provenance.items())])
-        folder = self._folder / f"{network.fingerprint}-{hashlib.sha256(words.encode()).hexdigest()[:16]}"
+        folder = self._folder.path / f"{network.fingerprint}-{hashlib.sha256(words.encode()).hexdigest()[:16]}"
         if not folder.exists():
             store_network(network, folder)
         return folder

@@ -22,6 +22,7 @@ from analysis.compute import InProcess, LocalProcesses, choose_compute, open_com
 from analysis.errors import Cancelled, ComputeError, InputError
 from analysis.network import Network
 from analysis.network_files import load_network, store_network
+from analysis.temporary_folder import TemporaryFolder
 
 HERE = Path(__file__).parent
 
@@ -239,8 +240,11 @@ def test_a_stop_is_heard_while_another_stream_has_the_workers(network: Network, 
     outer.close()
 
 
-def test_closing_cancels_a_stream_of_another_thread_and_removes_the_files(network: Network, tmp_path: Path) -> None:
-    before = set(Path(tempfile.gettempdir()).glob("corymb-*"))
+def test_closing_cancels_a_stream_of_another_thread_and_removes_the_files(
+    network: Network, tmp_path_factory: pytest.TempPathFactory, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    tmp_path, temporary = tmp_path_factory.mktemp("notes"), tmp_path_factory.mktemp("temporary")
+    monkeypatch.setattr(tempfile, "tempdir", str(temporary))
     compute = LocalProcesses(1)
     caught: list[BaseException] = []
 
@@ -253,12 +257,13 @@ def test_closing_cancels_a_stream_of_another_thread_and_removes_the_files(networ
     thread = threading.Thread(target=use)
     thread.start()
     assert wait_until(lambda: any(tmp_path.iterdir()))
+    assert len(list(temporary.glob("corymb-*"))) == 1
     (worker,) = (int(file.name) for file in tmp_path.iterdir())
     compute.close()
     thread.join(10)
     assert len(caught) == 1
     assert not psutil.pid_exists(worker)
-    assert set(Path(tempfile.gettempdir()).glob("corymb-*")) <= before
+    assert not list(temporary.glob("corymb-*"))
 
 
 PARENT = """
@@ -286,6 +291,31 @@ def test_workers_end_when_their_parent_is_killed(tmp_path: Path) -> None:
     parent.kill()
     parent.wait(10)
     assert wait_until(lambda: not any(alive(worker) for worker in workers), 10)
+
+
+def test_what_a_killed_process_left_is_removed_by_the_next(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setattr(tempfile, "tempdir", str(tmp_path))
+    code = f"""
+import os, sys, tempfile
+tempfile.tempdir = {str(tmp_path)!r}
+from analysis.temporary_folder import TemporaryFolder
+folder = TemporaryFolder.make()
+print(folder.path, flush=True)
+sys.stdin.read()
+"""
+    other = subprocess.Popen([sys.executable, "-c", code], stdin=subprocess.PIPE, stdout=subprocess.PIPE, text=True)
+    left = Path(other.stdout.readline().strip())
+    (left / "arrays").mkdir()
+    mine = TemporaryFolder.make()
+    assert left.exists()  # its process lives
+    other.kill()
+    other.communicate()
+    next_one = TemporaryFolder.make()
+    assert not left.exists()
+    assert mine.path.exists()
+    mine.remove()
+    next_one.remove()
+    assert list(tmp_path.iterdir()) == []
 
 
 def alive(worker: int) -> bool:
