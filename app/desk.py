@@ -17,10 +17,11 @@ from typing import Any
 
 import numpy as np
 
+from analysis.compare import Clustering, Comparison, ComparisonSettings, compare
 from analysis.compute import run_all
 from analysis.errors import CorymbError, InputError
 from analysis.evidence import HARVEST, method_of, run_study
-from analysis.handover import Bundle, Source, as_zip, bundle_files
+from analysis.handover import Bundle, Source, as_zip, bundle_files, report_from_plain
 from analysis.intake import Reading, parse_network, read_network
 from analysis.modules import Modules
 from analysis.network import FloatArray, Network
@@ -59,6 +60,7 @@ class Desk:
         self._draws: dict[str, NullDraws] = {}
         self._curves: dict[str, NoiseCurve] = {}
         self._packed: OrderedDict[str, tuple[str, bytes]] = OrderedDict()
+        self._comparisons: OrderedDict[tuple[str, str], Comparison] = OrderedDict()
 
     # networks
 
@@ -292,17 +294,45 @@ class Desk:
         arrays = self.workspace.arrays("noise curve", study_id)
         return None if arrays is None else NoiseCurve(REWIRED, **arrays)
 
+    # comparing
+
+    def comparison(self, first: str, second: str, labels: tuple[str, str]) -> Comparison | None:
+        """Compare two finished studies, of one network or of two; None where one of them is not kept.
+
+        Preservation is looked into where it takes no time; else `corymb compare` does.
+        """
+        studies = [self.study(each) for each in (first, second)]
+        if studies[0] is None or studies[1] is None:
+            return None
+        with self._lock:
+            found = self._comparisons.get((first, second))
+        if found is None:
+            one, other = (
+                Clustering(study.network, study.modules, label)
+                for study, label in zip((studies[0], studies[1]), labels, strict=True)
+            )
+            quick = max(one.network.edge_count, other.network.edge_count) <= SMALL_EDGES
+            found = compare(one, other, ComparisonSettings(permutations=100 if quick else 0))
+        with self._lock:
+            self._comparisons[first, second] = found
+            while len(self._comparisons) > COMPARISONS_AT_HAND:
+                self._comparisons.popitem(last=False)
+        return replace(found, first=labels[0], second=labels[1])
+
     # handing over
 
-    def start_packing(self, study_id: str) -> str:
-        """Begin to write the files of a study into a zip; return the job's id."""
+    def start_packing(self, study_id: str, parts: tuple[str, ...] = ()) -> str:
+        """Begin to write the files of a study into a zip; return the job's id.
+
+        `parts` are what is wanted beside the files that always are, keys of `analysis.handover.EXTRAS`.
+        """
 
         def work(progress: Progress) -> bytes:
             progress(0.1, "writing the files")
             study = self.study(study_id)
             if study is None:
                 raise CorymbError("this clustering is not ready yet; wait for it, then hand it over")
-            files = bundle_files(self._bundle(study))
+            files = bundle_files(self._bundle(study, parts))
             raw = self.workspace.raw(study.network.fingerprint)
             if raw is not None:
                 files[f"{INPUT_FOLDER}/{raw[0]}"] = raw[1]
@@ -318,9 +348,9 @@ class Desk:
             return content
 
         names = sorted(self.workspace.names(study_id).items())
-        return self.jobs.start("packing", f"{study_id}:{names}", work)
+        return self.jobs.start("packing", f"{study_id}:{names}:{parts}", work)
 
-    def _bundle(self, study: Study) -> Bundle:
+    def _bundle(self, study: Study, parts: tuple[str, ...] = ()) -> Bundle:
         """Return everything to be handed over; the input file travels in the zip, beside the recipe."""
         fingerprint = study.network.fingerprint
         raw = self.workspace.raw(fingerprint)
@@ -328,7 +358,8 @@ class Desk:
         if raw is not None:
             name, content = raw
             source = Source(name, hashlib.sha256(content).hexdigest(), f"{INPUT_FOLDER}/{name}")
-        return Bundle(study, None, source)
+        report = report_from_plain(self.workspace.report(fingerprint)) if source is not None else None
+        return Bundle(study, report, source, parts)
 
     def packed(self, study_id: str) -> tuple[str, bytes] | None:
         """Return file name and content of a zip that was written, None where there is none."""
@@ -340,6 +371,7 @@ AT_HAND = "network at hand"
 INPUT_FOLDER = "input"
 CURVE_ARRAYS = ("shares", "vi", "ami", "null_vi", "null_ami")
 ZIPS_AT_HAND = 4
+COMPARISONS_AT_HAND = 4
 QUICK_WORK = 100_000
 SMALL_EDGES = 20_000
 

@@ -49,6 +49,7 @@ def _stores() -> list[Any]:
         dcc.Store(id="shown", storage_type="session"),
         dcc.Store(id="station", storage_type="session", data=START),
         dcc.Store(id="pick", storage_type="memory"),
+        dcc.Store(id="pinned", storage_type="session"),
         dcc.Store(id="drawing-kind", storage_type="memory", data="whole"),
         dcc.Store(id="fault", storage_type="memory", data=""),
         dcc.Store(id="trust-seen", storage_type="memory"),
@@ -60,6 +61,7 @@ def _stores() -> list[Any]:
         dcc.Store(id="save-order", storage_type="memory"),
         # written by the page's own scripts
         dcc.Store(id="from-upload", storage_type="memory"),
+        dcc.Store(id="from-gene-sets", storage_type="memory"),
         dcc.Store(id="from-map", storage_type="memory"),
         dcc.Store(id="from-pane", storage_type="memory"),
         dcc.Store(id="from-ruler", storage_type="memory"),

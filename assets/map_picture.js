@@ -1,4 +1,4 @@
-/* The map as a picture file: all layers drawn again at twice the size of the screen, on paper. */
+/* The map as a picture file: all layers drawn again larger than on the screen, on paper. */
 (() => {
   "use strict";
   const corymb = (window.corymb = window.corymb || {});
@@ -9,11 +9,12 @@
   /**
    * @param {object} layers
    * @param {object} scene
+   * @param {number} size how many times the size of the screen
    * @returns {Promise<Blob>} PNG of the view as seen
    */
-  async function png(layers, scene) {
+  async function png(layers, scene, size = SIZE) {
     layers.flush();
-    const view = layers.viewNow(SIZE);
+    const view = layers.viewNow(size);
     const { theme } = layers;
     const canvas = document.createElement("canvas");
     const context = parts.view.prepare(canvas, view);

@@ -216,10 +216,15 @@
     });
   }
 
-  /** @returns {Promise<Blob>} the map as seen, at twice its size */
-  async function png() {
+  /** @returns {Promise<Blob>} the map as seen, at twice its size unless another is asked for */
+  async function png(size) {
     mount();
-    return parts.picture.png(layers, scene);
+    return parts.picture.png(layers, scene, size);
+  }
+
+  /** What the modules on the map are called and how they are coloured; null before there are any. */
+  function colouring() {
+    return scene?.colouring ?? null;
   }
 
   /** Where a gene is on the screen now, in CSS pixels of the map's element. */
@@ -243,5 +248,5 @@
     };
   }
 
-  corymb.map = { load, colour, confidence, select, focus, remove, dim, png, where, stats, onPick: null };
+  corymb.map = { load, colour, confidence, select, focus, remove, dim, png, colouring, where, stats, onPick: null };
 })();

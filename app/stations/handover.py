@@ -4,6 +4,11 @@ from __future__ import annotations
 
 from typing import Any
 
+from dash import dcc
+
+from analysis.handover import EXTRAS, has_confidence
+from analysis.handover.tables import can_write_parquet
+from analysis.study import Study
 from analysis.verdicts import DEGREE_CAUTION, STRUCTURE_CAUTION, USE_CAUTION
 from app.parts import button, heading, notice, sentence, table
 from app.view import Pane, View
@@ -17,7 +22,23 @@ FILES = (
     ("summary.json", "figures, settings and versions"),
     ("report.html", "figures, tables, cautions and a methods paragraph, in one file"),
     ("network.graphml", "the network with module, confidence and role at each node"),
+    ("references.bib", "what the methods paragraph cites, as BibTeX"),
     ("recipe.toml", "repeats all of it: corymb rerun recipe.toml -o FOLDER"),
+)
+CHOICES = {
+    "tsv": "membership.tsv: the membership table with tabs",
+    "xlsx": "membership.xlsx: both tables as a workbook; gene symbols are text, so that none becomes a date",
+    "parquet": "membership.parquet: the membership table, for programs",
+    "core-lists": "gene_lists_core/: core only, the genes that stay in nine of ten copies; background beside them",
+    "set-lines": "module_sets.tsv: all modules in one file, one line each, for enrichment programs",
+    "map-svg": "map.svg: the map with its legend, to be edited",
+    "map-pdf": "map.pdf: the same for print",
+    "figure-data": "figure_data/: the numbers behind the figures",
+}
+"""What may be written too; keys of `analysis.handover.EXTRAS`."""
+PICTURE_SENTENCE = (
+    "The map as it stands on the screen can be saved as a picture with its legend. map.svg and map.pdf draw the whole "
+    "network with the modules' own colours in the order of their numbers."
 )
 
 
@@ -42,8 +63,27 @@ def render(view: View) -> Pane:
         sentence(f"Shown and written: {view.study.shown}. The input file goes in too, so that the recipe works."),
         heading("What will be written"),
         table(["file", "content"], [list(each) for each in FILES], name="Files"),
+        heading("What may be written too"),
+        dcc.Checklist(
+            _choices(view.study),
+            [],
+            id={"type": "handover-parts", "index": 0},
+            className="choices",
+            persistence=True,
+            persistence_type="session",
+        ),
+        *([] if can_write_parquet() else [sentence("Parquet needs pyarrow, which is not installed here.")]),
+        heading("The map as a picture"),
+        sentence(PICTURE_SENTENCE),
+        button("Save the map as PNG (300 dpi)", "save-map"),
         notice(f"{STRUCTURE_CAUTION} {DEGREE_CAUTION} {USE_CAUTION}"),
     ]
     return Pane(
         TITLE, body, [button("Write and save the zip", {"type": "hand-over", "index": 0}, kind="button primary")]
     )
+
+
+def _choices(study: Study) -> list[dict[str, Any]]:
+    """Return what may be written too; what cannot be is there and cannot be chosen."""
+    impossible = {"core-lists": not has_confidence(study.settings), "parquet": not can_write_parquet()}
+    return [{"label": CHOICES[part], "value": part, "disabled": impossible.get(part, False)} for part in EXTRAS]

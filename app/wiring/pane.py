@@ -7,6 +7,7 @@ from typing import Any
 
 from dash import ALL, Dash, Input, Output, State, ctx, html, no_update
 
+from app.compare_pane import compare_pane
 from app.desk import Desk
 from app.frame import WANTED
 from app.keys import keys_pane
@@ -102,6 +103,8 @@ def _picked(view: View, pick: Any) -> Pane | None:
         return module_passport(view, view.module_of(pick))
     if kind == "gene":
         return gene_passport(view, int(pick["index"]))
+    if kind == "compare":
+        return compare_pane(view, pick)
     if kind == "list":
         return listing(view, pick)
     return keys_pane() if kind == "keys" else None

@@ -69,12 +69,13 @@ def wire(app: Dash, desk: Desk) -> None:
         Output("tick", "disabled", allow_duplicate=True),
         Input({"type": "hand-over", "index": ALL}, "n_clicks"),
         State("shown", "data"),
+        State({"type": "handover-parts", "index": ALL}, "value"),
         prevent_initial_call=True,
     )
-    def hand_over(_clicks: Any, shown: Any) -> Any:
+    def hand_over(_clicks: Any, shown: Any, chosen: Any) -> Any:
         if not pressed("hand-over") or not shown:
             return no_update, no_update
-        job = desk.start_packing(shown["study"])
+        job = desk.start_packing(shown["study"], tuple(part for parts in chosen for part in parts or ()))
         return {"study": shown["study"], "job": job, "moment": time.time()}, False
 
     @app.callback(Output("tick", "disabled", allow_duplicate=True), Input("wanted", "data"), prevent_initial_call=True)
