@@ -254,6 +254,7 @@ def _run_nulls(
         modules,
         nulls=settings.nulls,
         seed=settings.seed,
+        chosen_from=1 if isinstance(method, CliquePercolation) else settings.runs,
         compute=compute,
         progress=progress,
         on_draws=on_draws,
