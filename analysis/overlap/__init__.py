@@ -1,0 +1,1 @@
+"""Covers: clique percolation for every k, agreement of covers, and from a partition to a cover."""
