@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections import Counter
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass, field, replace
 from typing import Any
@@ -16,7 +17,16 @@ from analysis.portrait.degree_distribution import DegreeDistribution, DegreeTask
 from analysis.portrait.distances import Distances, Searches, SearchTask, gather_distances, sources_to_draw
 from analysis.portrait.hierarchy import Hierarchy, hierarchy
 from analysis.portrait.hubs import Hubs, HubTask, gather_hubs
-from analysis.portrait.summary import DEGREES, OWN, UNIFORM, FiguresTask, Measured, Summary, gather_nulls
+from analysis.portrait.summary import (
+    DEGREES,
+    UNIFORM,
+    FiguresTask,
+    Measured,
+    OwnFiguresTask,
+    OwnMeasured,
+    Summary,
+    gather_nulls,
+)
 from analysis.portrait.tolerance import (
     BETWEENNESS,
     DEGREE,
@@ -28,12 +38,13 @@ from analysis.portrait.tolerance import (
     gather_curves,
     is_betweenness_affordable,
 )
-from analysis.progress import Progress, silent
+from analysis.progress import Progress, portion, silent
 
 PURPOSE = 11
 SEARCH_PARTS = 4
 SAMPLES_A_TASK = 10
 PHRASE = "portrait of the network"
+QUICK = (OwnFiguresTask, DegreeTask, HubTask, SearchTask)
 
 
 @dataclass(frozen=True)
@@ -106,38 +117,43 @@ class _Sitting:
     portrait: Portrait
     publications: Mapping[str, float] | None
     seed: int
-    own: Measured | None = None
+    own: OwnMeasured | None = None
     hubs: Any = None
-    nulls: list[Measured] = field(default_factory=list)
+    nulls: dict[int, Measured] = field(default_factory=dict)
     searches: dict[int, Searches] = field(default_factory=dict)
     removals: dict[int, Removals] = field(default_factory=dict)
     samples: dict[int, Any] = field(default_factory=dict)
 
     def take(self, position: int, task: Task, result: Any, left: Mapping[type, int]) -> bool:
         """Take a result; return whether the portrait shows more than before."""
-        return _TAKERS[type(task)](self, position, result, left.get(type(task), 0))
+        return _TAKERS[type(task)](self, position, result, left[type(task)])
 
     def put(self, **sections: Any) -> bool:
         self.portrait = replace(self.portrait, **sections)
         return True
 
-    def take_figures(self, _position: int, result: Measured, left: int) -> bool:
-        if result.kind == OWN:
-            self.own = result
-            weighted = self.network.weights is not None
-            local = result.local if result.local is not None else np.zeros(0)
-            self.put(
-                summary=self._with_path(Summary(result.figures, weighted, {}, {})),
-                hierarchy=hierarchy(self.network, local, self.seed),
-            )
-            return self._list_hubs()
-        self.nulls.append(result)
+    def take_own(self, _position: int, result: OwnMeasured, _left: int) -> bool:
+        self.own = result
+        weighted = self.network.weights is not None
+        self.put(
+            summary=self._with_path(Summary(result.figures, weighted, {}, {})),
+            hierarchy=hierarchy(self.network, result.local, self.seed),
+        )
+        return self._list_hubs()
+
+    def take_nulls(self, position: int, result: Measured, left: int) -> bool:
+        self.nulls[position] = result
         if left:
             return False
-        by_degree = [each.by_degree for each in self.nulls if each.by_degree is not None]
+        found = [self.nulls[key] for key in sorted(self.nulls)]
+        by_degree = [each.by_degree for each in found if each.by_degree is not None]
         if self.portrait.hierarchy is not None and by_degree:
             self.put(hierarchy=self.portrait.hierarchy.with_nulls(np.mean(by_degree, axis=0)))
-        return self._compare()
+        nulls = {kind: gather_nulls(found, kind) for kind in (DEGREES, UNIFORM)}
+        summary = self.portrait.summary
+        if summary is None:
+            return False
+        return self.put(summary=replace(summary, degrees=nulls[DEGREES], uniform=nulls[UNIFORM]))
 
     def take_degrees(self, _position: int, result: DegreeDistribution, _left: int) -> bool:
         return self.put(degrees=result)
@@ -170,16 +186,9 @@ class _Sitting:
         return self.put(degrees=self.portrait.degrees.judged(distances)) if len(distances) else False
 
     def _list_hubs(self) -> bool:
-        if self.hubs is not None and self.own is not None and self.own.local is not None and self.own.core is not None:
+        if self.hubs is not None and self.own is not None:
             self.put(hubs=gather_hubs(self.network, self.hubs, self.own.local, self.own.core, self.publications))
         return True
-
-    def _compare(self) -> bool:
-        summary = self.portrait.summary
-        if summary is None:
-            return False
-        nulls = {kind: gather_nulls(self.nulls, kind) for kind in (DEGREES, UNIFORM)}
-        return self.put(summary=replace(summary, degrees=nulls[DEGREES], uniform=nulls[UNIFORM]))
 
     def _with_path(self, summary: Summary) -> Summary:
         if self.portrait.distances is None:
@@ -188,7 +197,8 @@ class _Sitting:
 
 
 _TAKERS: dict[type, Callable[[_Sitting, int, Any, int], bool]] = {
-    FiguresTask: _Sitting.take_figures,
+    OwnFiguresTask: _Sitting.take_own,
+    FiguresTask: _Sitting.take_nulls,
     DegreeTask: _Sitting.take_degrees,
     HubTask: _Sitting.take_hubs,
     SearchTask: _Sitting.take_searches,
@@ -202,6 +212,7 @@ def run_portrait(
     settings: PortraitSettings | None = None,
     *,
     compute: Compute | None = None,
+    first: Compute | None = None,
     publications: Mapping[str, float] | None = None,
     progress: Progress = silent,
     on_section: Callable[[Portrait], None] = ignore,
@@ -214,6 +225,8 @@ def run_portrait(
     settings : PortraitSettings, optional
     compute : Compute, optional
         Where the tasks run; in this process by default.
+    first : Compute, optional
+        Where the quick tasks run, of which the first sections are made; as `compute` by default.
     publications : mapping of gene to count, optional
         How often each gene was studied, to be compared with its degree.
     on_section : callable
@@ -227,16 +240,17 @@ def run_portrait(
     settings = settings or PortraitSettings()
     if not network.edge_count:
         raise SettingError("a network without an edge has no portrait; give one with at least one interaction")
+    compute = compute or InProcess()
     tasks = portrait_tasks(network, settings)
-    left: dict[type, int] = {}
-    for task in tasks:
-        left[type(task)] = left.get(type(task), 0) + 1
+    begin = sum(isinstance(task, QUICK) for task in tasks)
+    left = Counter(type(task) for task in tasks)
     sitting = _Sitting(network, Portrait(settings), publications, settings.seed)
-    stream = (compute or InProcess()).stream(network, tasks, progress=progress, phrase=PHRASE)
-    for position, result in stream:
-        left[type(tasks[position])] -= 1
-        if sitting.take(position, tasks[position], result, left):
-            on_section(sitting.portrait)
+    for part, where, share in ((tasks[:begin], first or compute, (0.0, 0.1)), (tasks[begin:], compute, (0.1, 1.0))):
+        for position, result in where.stream(network, part, progress=portion(progress, *share), phrase=PHRASE):
+            task = part[position]
+            left[type(task)] -= 1
+            if sitting.take(position, task, result, left):
+                on_section(sitting.portrait)
     sitting.put(complete=True)
     on_section(sitting.portrait)
     return sitting.portrait
@@ -250,7 +264,7 @@ def portrait_tasks(network: Network, settings: PortraitSettings) -> list[Task]:
     sources = sources_to_draw(network)
     targeted = [DEGREE, RECOMPUTED, *([BETWEENNESS] if is_betweenness_affordable(network) else [])]
     return [
-        FiguresTask(OWN),
+        OwnFiguresTask(),
         DegreeTask(),
         HubTask(order),
         *(SearchTask(sources, searches, part, SEARCH_PARTS) for part in range(SEARCH_PARTS)),

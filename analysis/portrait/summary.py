@@ -15,7 +15,7 @@ from analysis.portrait.hierarchy import mean_by_degree
 from analysis.portrait.uniform_network import uniform_network
 from analysis.trust.nulls import rewire
 
-OWN, DEGREES, UNIFORM = "own", "degrees", "uniform"
+DEGREES, UNIFORM = "degrees", "uniform"
 NULL_SOURCES = 256
 CLEAR = 2.0
 SOURCE = (
@@ -88,26 +88,39 @@ KEPT = {
 
 @dataclass(frozen=True, eq=False)
 class Measured:
-    """What one network gave.
+    """What one null network gave.
 
     Attributes
     ----------
     kind : str
-        `own`, `degrees` or `uniform`.
+        `degrees` or `uniform`.
     figures : Figures
-    local : float64 array, shape (nodes,), or None
-        Local clustering; of the network itself.
-    core : int64 array, shape (nodes,), or None
-        Core number; of the network itself.
     by_degree : float64 array, shape (highest degree + 1,), or None
         Mean local clustering by degree; of networks with the same degrees.
     """
 
     kind: str
     figures: Figures
-    local: FloatArray | None = None
-    core: NDArray[np.int64] | None = None
     by_degree: FloatArray | None = None
+
+
+@dataclass(frozen=True, eq=False)
+class OwnMeasured:
+    """What the network itself gave.
+
+    Attributes
+    ----------
+    figures : Figures
+        Without the mean path, which takes longer.
+    local : float64 array, shape (nodes,)
+        Local clustering.
+    core : int64 array, shape (nodes,)
+        Core number.
+    """
+
+    figures: Figures
+    local: FloatArray
+    core: NDArray[np.int64]
 
 
 @dataclass(frozen=True)
@@ -192,24 +205,31 @@ class Summary:
 
 
 @dataclass(frozen=True)
+class OwnFiguresTask:
+    """Measures the network itself."""
+
+    def run(self, network: Network) -> OwnMeasured:
+        """Return all figures but the mean path."""
+        local, core = local_clustering(network), core_numbers(network)
+        return OwnMeasured(measure(network, local, core, float("nan")), local, core)
+
+
+@dataclass(frozen=True)
 class FiguresTask:
-    """Measures the network, or a null network of it.
+    """Draws a null network and measures it.
 
     Attributes
     ----------
     kind : str
-        `own`, `degrees` or `uniform`.
+        `degrees` or `uniform`.
     seed : int
     """
 
     kind: str
-    seed: int = 0
+    seed: int
 
     def run(self, network: Network) -> Measured:
-        """Draw the network if need be, and measure it."""
-        if self.kind == OWN:
-            local, core = local_clustering(network), core_numbers(network)
-            return Measured(OWN, measure(network, local, core, float("nan")), local, core)
+        """Return the figures of the network drawn."""
         drawn = (rewire if self.kind == DEGREES else uniform_network)(network.without_weights(), self.seed)
         local = local_clustering(drawn)
         path = float(search(drawn, chosen_sources(drawn, NULL_SOURCES, self.seed)).means.mean())

@@ -16,6 +16,7 @@ from numpy.typing import NDArray
 
 from analysis.modules import Modules
 from analysis.network import Network, locked
+from analysis.portrait import PORTRAIT_TYPES
 from analysis.study import NullDraws, Study, StudySettings
 from app.workspace.entries import to_json
 
@@ -25,7 +26,9 @@ if TYPE_CHECKING:
 Arrays = dict[str, NDArray[Any]]
 Find = Callable[[str], Network]
 
-KEPT: dict[str, type[Any]] = {kind.__name__: kind for kind in (Study, StudySettings, Modules, NullDraws)}
+KEPT: dict[str, type[Any]] = {
+    kind.__name__: kind for kind in (Study, StudySettings, Modules, NullDraws, *PORTRAIT_TYPES)
+}
 DOCUMENT = "document"
 TEXT_DTYPES = frozenset({"object", "str", "string"})
 
@@ -75,6 +78,29 @@ def study_from_arrays(arrays: Mapping[str, NDArray[Any]], find: Find) -> Study:
     if not isinstance(study, Study):
         raise TypeError(f"a {type(study).__name__} stands where a study was expected")
     return study
+
+
+def result_to_arrays(value: Any) -> Arrays:
+    """Return any result of the known types as arrays."""
+    arrays: Arrays = {}
+    tree = _encode(value, "result", arrays)
+    arrays[DOCUMENT] = _text_array(to_json(tree))
+    return arrays
+
+
+def result_from_arrays(arrays: Mapping[str, NDArray[Any]]) -> Any:
+    """Return the result of `result_to_arrays` again; it must hold no network.
+
+    Raises
+    ------
+    KeyError, TypeError
+        Where another version of corymb wrote it.
+    """
+
+    def find(fingerprint: str) -> Network:
+        raise KeyError(fingerprint)
+
+    return _decode(json.loads(arrays[DOCUMENT].tobytes()), arrays, find)
 
 
 def _text_array(text: str) -> NDArray[np.uint8]:

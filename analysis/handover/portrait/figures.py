@@ -159,7 +159,7 @@ def _tolerance(section: Tolerance) -> PortraitFigure:
         band = (curve.low, curve.high) if curve.draws > 1 else (None, None)
         series.append(Series(words, curve.removed, curve.giant, colour, CURVE, low=band[0], high=band[1]))
     across = Axis("genes removed", 0.0, 1.0, share=True)
-    up = Axis("genes in the largest component", 0.0, 1.0, share=True)
+    up = Axis("largest component", 0.0, 1.0, share=True)
     drawn = plot("Largest component as genes are removed", across, up, series)
     columns = {
         "removal": np.repeat([each.strategy for each in section.curves], [len(each.removed) for each in section.curves])

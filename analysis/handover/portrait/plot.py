@@ -13,7 +13,7 @@ from numpy.typing import NDArray
 from analysis.handover.report.markup import Markup, number, tag
 
 WIDTH, HEIGHT = 440.0, 250.0
-LEFT, RIGHT, BOTTOM = 52.0, 14.0, 40.0
+LEFT, RIGHT, BOTTOM = 52.0, 22.0, 40.0
 LEGEND_LINE, LETTER = 17.0, 6.3
 LEAF, GREY, OCHRE, BLUE, INK, LINE = "#2d6a4f", "#7d8a88", "#b9852b", "#0072b2", "#1d2a2f", "#dcdcd2"
 DOTS, CURVE, BARS = "dots", "curve", "bars"
