@@ -33,6 +33,7 @@ from analysis.trust.sweep import SweepSettings, preview_points, resolution_grid,
 from app.jobs import Jobs
 from app.map.colours import Anchor, make_anchor, pack_colours
 from app.map.drawing import DrawTask
+from app.meaning_desk import MeaningDesk
 from app.places import sample_folder
 from app.ruler import Ruler
 from app.workspace import TrailEntry, Workspace, clustering_id
@@ -54,6 +55,7 @@ class Desk:
     def __init__(self, workspace: Workspace, jobs: Jobs) -> None:
         self.workspace = workspace
         self.jobs = jobs
+        self.meaning = MeaningDesk(workspace, jobs)
         self._lock = threading.RLock()
         self._anchors: OrderedDict[str, Anchor] = OrderedDict()
         self._rulers: dict[tuple[str, str], Ruler] = {}

@@ -53,6 +53,8 @@ def _stores() -> list[Any]:
         dcc.Store(id="drawing-kind", storage_type="memory", data="whole"),
         dcc.Store(id="fault", storage_type="memory", data=""),
         dcc.Store(id="trust-seen", storage_type="memory"),
+        dcc.Store(id="meaning-seen", storage_type="memory", data=""),
+        dcc.Store(id="meaning-chosen", storage_type="memory", data=0),
         dcc.Store(id="names-version", storage_type="memory", data=0),
         dcc.Store(id="ruler-data", storage_type="memory"),
         dcc.Store(id="map-order", storage_type="memory"),

@@ -8,6 +8,7 @@ from typing import Any
 import dash_ag_grid as dag
 import numpy as np
 
+from analysis.meaning import Meaning, enrichment_table, title_of
 from analysis.study import Study
 
 THEME = (
@@ -15,6 +16,10 @@ THEME = (
     "backgroundColor: 'var(--panel)', foregroundColor: 'var(--ink)', headerBackgroundColor: 'var(--panel)', "
     "headerTextColor: 'var(--ink-soft)', borderColor: 'var(--line)', spacing: 5, wrapperBorderRadius: 6})"
 )
+
+
+EXPONENT = "params.value == null ? '–' : params.value.toExponential(1)"
+PAIRS_SHOWN = 5_000
 
 
 def module_grid(study: Study, hues: Sequence[int]) -> Any:
@@ -54,6 +59,29 @@ def gene_grid(study: Study) -> Any:
         _column("role", "role", 140, filter="agTextColumnFilter"),
     ]
     return _grid("gene-grid", columns, rows, "params.data.id")
+
+
+def enrichment_grid(meaning: Meaning) -> Any:
+    """Return the enriched pairs of a module and a gene set, strongest first."""
+    enrichment = meaning.enrichment
+    called = np.concatenate([enrichment.enriched(module) for module in range(len(enrichment.modules))])
+    pairs = called[np.argsort(enrichment.p_value[called], kind="stable")][:PAIRS_SHOWN].astype(np.int64)
+    table = enrichment_table(enrichment, pairs)
+    table["gene_set"] = [title_of(enrichment.sets, gene_set) for gene_set in enrichment.gene_set[pairs].tolist()]
+    rows = table.to_dict("records")
+    for position, row in enumerate(rows):
+        row["id"] = str(position)
+    columns = [
+        _column("module", "module", 90, filter="agTextColumnFilter", comparator={"function": "corymbByNumber"}),
+        _column("gene_set", "gene set", 190, filter="agTextColumnFilter"),
+        _number("overlap", "overlap", 86, 0),
+        _number("set_size", "of set", 78, 0),
+        _number("module_size", "of module", 100, 0),
+        _number("fold", "fold", 72, 1),
+        _column("q_value", "q-value", 90, type="rightAligned", valueFormatter={"function": EXPONENT}),
+        _column("genes", "genes", 260, filter="agTextColumnFilter", tooltipField="genes"),
+    ]
+    return _grid("enrichment-grid", columns, rows, "params.data.id")
 
 
 def _grid(grid_id: str, columns: list[dict[str, Any]], rows: list[dict[Hashable, Any]], row_id: str) -> Any:

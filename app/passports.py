@@ -8,6 +8,8 @@ from typing import Any
 import numpy as np
 from dash import dcc, html
 
+from analysis.meaning import module_sentence as enrichment_sentence
+from analysis.meaning import title_of
 from analysis.modules import expected_density
 from analysis.network import Network
 from analysis.study import Study
@@ -41,6 +43,7 @@ def module_passport(view: View, module: int) -> Pane:
         sentence(module_sentence(study, module), first=True),
         _module_evidence(study, module),
         notice(STRUCTURE_CAUTION),
+        *_gene_sets(view, module),
         *_members(study, module),
     ]
     actions = [
@@ -103,6 +106,28 @@ def _returned(study: Study, module: int, *, firm: bool) -> list[list[Any]]:
     return [
         ["comes back in noisy copies", bar(share, doubt=not firm), f"{study.returned[module]} of {study.copies}", ""]
     ]
+
+
+def _gene_sets(view: View, module: int) -> list[Any]:
+    """Return the sets that a module is enriched in, where gene sets were given."""
+    meaning = view.desk.meaning.found(view.study_id, view.study)
+    if meaning is None:
+        return []
+    enrichment = meaning.enrichment
+    lines = [
+        [
+            link(title_of(enrichment.sets, gene_set), {"type": "light-set", "index": gene_set}),
+            f"{enrichment.overlap[pair]} of {enrichment.sets.sizes[gene_set]}",
+            number(float(enrichment.fold[pair]), 1),
+            number(float(enrichment.q_value[pair]), 3),
+        ]
+        for pair, gene_set in ((each.pair, int(enrichment.gene_set[each.pair])) for each in meaning.folds(module)[:5])
+    ]
+    words = sentence(enrichment_sentence(enrichment, module))
+    if not lines:
+        return [heading("Gene sets"), words]
+    rows = table(["gene set", "overlap", "fold", "q-value"], lines, numeric=[1, 2, 3], name="Gene sets of the module")
+    return [heading("Gene sets"), words, rows]
 
 
 def _members(study: Study, module: int) -> list[Any]:

@@ -87,7 +87,10 @@ def _upload(desk: Desk) -> Callable[[], Any]:
         sent = request.files.get("file")
         if sent is None or not sent.filename:
             return jsonify({"fault": "No file came with the request; choose one and try again."}), 400
+        kind = request.form.get("kind", "network")
         try:
+            if kind != "network":
+                return jsonify({"kind": kind, "file": desk.meaning.keep(kind, sent.read(), sent.filename)})
             fingerprint = desk.open_bytes(sent.read(), sent.filename)
         except CorymbError as error:
             return jsonify({"fault": str(error)})

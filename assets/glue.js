@@ -311,11 +311,13 @@
 
   // --- uploads -------------------------------------------------------------------------------------------------
 
-  async function upload(file) {
-    const drop = document.getElementById("drop");
+  /** Sends a file; `kind` is "network", or which file of the gene sets it is. */
+  async function upload(file, kind) {
+    const drop = document.querySelector(kind === "network" ? "#drop" : `[data-upload="${kind}"]`);
     if (drop) drop.dataset.busy = "yes";
     const form = new FormData();
     form.append("file", file);
+    form.append("kind", kind);
     let answer;
     try {
       const response = await fetch("/upload", { method: "POST", body: form });
@@ -326,43 +328,50 @@
       answer = { fault: `${file.name}: could not be sent; is corymb still running? (${error.message})` };
     }
     if (drop) delete drop.dataset.busy;
-    setProps("from-upload", { data: { ...answer, moment: Date.now() } });
+    setProps(kind === "network" ? "from-upload" : "from-gene-sets", { data: { ...answer, moment: Date.now() } });
   }
 
-  function choose() {
+  /** What a file is that is dropped or chosen here: what the place asks for, else what the station at hand asks for. */
+  function kindAt(target) {
+    const asking = target?.closest?.("[data-upload]") || document.querySelector(".drop[data-upload]");
+    return asking && !target?.closest?.("#drop") ? asking.dataset.upload : "network";
+  }
+
+  function choose(kind) {
     const picker = document.createElement("input");
     picker.type = "file";
-    picker.addEventListener("change", () => picker.files.length && upload(picker.files[0]));
+    picker.addEventListener("change", () => picker.files.length && upload(picker.files[0], kind));
     picker.click();
   }
 
   document.addEventListener("click", (event) => {
-    if (event.target.closest && event.target.closest("#drop")) choose();
+    const asking = event.target.closest && event.target.closest("#drop, [data-upload]");
+    if (asking) choose(kindAt(asking));
   });
   document.addEventListener("dragover", (event) => {
     if (!event.dataTransfer || !Array.from(event.dataTransfer.types).includes("Files")) return;
     event.preventDefault();
-    const drop = document.getElementById("drop");
+    const drop = document.querySelector("#drop, .drop[data-upload]");
     if (drop) drop.dataset.over = "yes";
   });
   document.addEventListener("dragleave", () => {
-    const drop = document.getElementById("drop");
+    const drop = document.querySelector("#drop, .drop[data-upload]");
     if (drop) delete drop.dataset.over;
   });
   document.addEventListener("drop", (event) => {
     if (!event.dataTransfer || !event.dataTransfer.files.length) return;
     event.preventDefault();
-    upload(event.dataTransfer.files[0]);
+    upload(event.dataTransfer.files[0], kindAt(event.target));
   });
 
   // --- keys ----------------------------------------------------------------------------------------------------
 
   document.addEventListener("keydown", (event) => {
     const typing = /^(INPUT|TEXTAREA|SELECT)$/.test(document.activeElement?.tagName || "");
-    const drop = document.activeElement?.id === "drop";
+    const drop = document.activeElement?.matches("#drop, .drop[data-upload]");
     if (drop && (event.key === "Enter" || event.key === " ")) {
       event.preventDefault();
-      choose();
+      choose(kindAt(document.activeElement));
     } else if (event.key === "/" && !typing) {
       event.preventDefault();
       document.getElementById("find")?.focus();

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections import defaultdict
 from dataclasses import dataclass
 from itertools import combinations
+from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
@@ -33,7 +34,7 @@ class Spread:
         Modules enriched in each set, that with the most of its genes first.
     """
 
-    overlaps: object
+    overlaps: Any
     touched: IntArray
     effective: FloatArray
     largest_share: FloatArray

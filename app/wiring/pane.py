@@ -55,6 +55,7 @@ def wire(app: Dash, desk: Desk) -> None:
         Input("fault", "data"),
         Input("map-order", "data"),
         Input("trust-seen", "data"),
+        Input("meaning-seen", "data"),
         State("wanted", "data"),
         State("pending", "data"),
     )
@@ -67,6 +68,7 @@ def wire(app: Dash, desk: Desk) -> None:
         message: str,
         _map: Any,
         _trust: Any,
+        _meaning: Any,
         wanted: Any,
         pending: Any,
     ) -> Any:

@@ -19,6 +19,7 @@ WORDS = {
     "sweep": "sweep over resolutions",
     "study": "modules and their evidence",
     "packing": "writing the files",
+    "meaning": "testing modules with gene sets",
 }
 
 
