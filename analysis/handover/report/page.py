@@ -14,6 +14,7 @@ from analysis.handover.report.map_figure import draw_map
 from analysis.handover.report.markup import Markup, join, short, tag
 from analysis.handover.report.methods_text import methods_sentences
 from analysis.handover.report.module_section import LIMIT_MARK, gene_lists, has_limit, least_sure, module_tables
+from analysis.handover.report.story import bridges, notes, question, resolution
 from analysis.handover.report.style import STYLE
 from analysis.handover.report.wording import chance, count, figure, is_known, plain
 from analysis.network import FloatArray
@@ -55,10 +56,14 @@ def report_page(bundle: Bundle, positions: FloatArray) -> str:
         tag(
             "main",
             _verdict(study),
+            question(study),
             _map(study, positions),
+            resolution(study),
             _trust(study),
             _modules(study),
+            bridges(study),
             [chapter(section) for section in bundle.sections],
+            notes(study),
             _cautions(),
             _read(bundle),
             _methods(bundle),
@@ -135,6 +140,10 @@ def _null_figure(study: Study) -> Markup | None:
         f"Grey: modularity of {count(len(study.nulls.draws), 'random network')} with the same degrees; green: this one "
         f"(p = {chance(study.nulls.p_value)}{z})."
     )
+    if study.network.weights is not None:
+        text += (
+            " Weights are shuffled over the rewired edges there, so that any bond between weight and place counts too."
+        )
     return _panel("Against chance", null_chart(study.nulls), text)
 
 
@@ -181,7 +190,7 @@ def _explained(study: Study) -> list[str]:
         if study.copies
         else "Stability: how much of it is found again on average; 1 is all of it everywhere.",
         "Evidence: how much denser it is than its degrees give by chance, in nats per gene.",
-        "Support: stability times evidence; it orders modules and is no probability.",
+        f"Support: stability times evidence; it orders modules and is no probability. {CLUSTERED_CAUTION}",
     ]
     if study.module_table["q_value"].notna().any() and study.settings.method != "harvest":
         told.append("q: the p-value against modules of like size found in random networks, corrected over all modules.")
@@ -246,7 +255,8 @@ def _repeat(bundle: Bundle) -> Markup:
             tag(
                 "p",
                 "The recipe beside this report repeats the work and gives the same tables, byte by byte, with the same "
-                "versions. It looks for the network's file where it was, then beside the recipe.",
+                "versions; where a file or a version differs it says so and stops, unless --anyway is given. It looks "
+                "for the network's file where it was, then beside the recipe.",
             ),
             tag("pre", tag("code", "corymb rerun recipe.toml -o again")),
         ]
