@@ -106,13 +106,16 @@
     text("state-count", `${count} modules, ${large.toLocaleString("en")} of ${state.sizeCut} genes or more`);
   }
 
+  const isOnMap = (ruler) => state.network === `/data/${ruler.network}`;
   const rulerUrl = (ruler, index) => `/data/${ruler.network}/ruler/${ruler.quality}/${index}?v=${ruler.version}`;
 
   /** Fetches the partitions of the ruler ahead, nearest to the marker first, so that the marker never waits. */
   async function fetchAhead() {
     const turn = (state.turn += 1);
-    const ruler = state.ruler;
-    if (ruler.busy) return;
+    const { ruler } = state;
+    if (!ruler || ruler.busy) return;
+    await state.loaded;
+    if (!isOnMap(ruler)) return; // begun again once its network is
     const here = nearest(ruler.grid, state.wanted ? state.wanted.resolution : 1);
     const order = ruler.grid.map((_, index) => index).sort((a, b) => Math.abs(a - here) - Math.abs(b - here));
     for (const index of order) {
@@ -139,9 +142,10 @@
     if (index < 0) return;
     const { ruler } = state; // another may take its place while we wait
     await state.loaded;
+    if (!isOnMap(ruler)) return;
     const turn = (state.previews += 1);
     const decoded = await colours(rulerUrl(ruler, index));
-    if (!decoded || turn !== state.previews || state.network !== `/data/${ruler.network}`) return;
+    if (!decoded || turn !== state.previews || !isOnMap(ruler)) return;
     paint(decoded, {});
     describe(decoded, ruler.grid[index]);
   }
@@ -162,6 +166,7 @@
           .then((answer) => answer.arrayBuffer())
           .then((buffer) => (state.degrees = new Uint32Array(buffer))),
       ]).then(() => paintAnchor(order.url));
+      state.loaded.then(fetchAhead);
       return noUpdate();
     },
 
