@@ -114,6 +114,7 @@ def test_it_writes_everything_of_the_contract(karate_out):
         "summary.json",
         "recipe.toml",
         "report.html",
+        "references.bib",
         "network.graphml",
         "gene_lists/background.txt",
         *(f"gene_lists/M{number}.txt" for number in (1, 2, 3, 4)),
@@ -298,12 +299,52 @@ def test_a_recipe_that_reads_another_network_is_stopped(karate_out, tmp_path, ca
     assert "another network" in capsys.readouterr().err
 
 
-def test_other_versions_are_told(karate_out, tmp_path, capsys):
+def test_other_versions_stop_it_unless_it_is_to_go_on_anyway(karate_out, tmp_path, capsys):
     write_karate(tmp_path)
     text = (karate_out / "recipe.toml").read_text()
     (tmp_path / "recipe.toml").write_text(text.replace('igraph = "', 'igraph = "0.'))
-    assert main(["rerun", str(tmp_path / "recipe.toml"), "-o", str(tmp_path / "out")]) == 0
-    assert "was written with igraph 0." in capsys.readouterr().err
+    command = ["rerun", str(tmp_path / "recipe.toml"), "-o", str(tmp_path / "out"), "--quiet"]
+    assert main(command) == 2
+    told = capsys.readouterr().err
+    assert "was written with igraph 0." in told
+    assert "--anyway" in told
+    assert not (tmp_path / "out").exists()
+    assert main([*command, "--anyway"]) == 0
+    assert "going on" in capsys.readouterr().err
+    assert _files(tmp_path / "out")["membership.csv"] == _files(karate_out)["membership.csv"]
+
+
+def test_a_changed_file_is_taken_where_it_is_to_go_on_anyway(karate_out, tmp_path, capsys):
+    (tmp_path / "recipe.toml").write_bytes((karate_out / "recipe.toml").read_bytes())
+    (tmp_path / "karate.txt").write_text(karate_text() + "n1 n99\n")
+    command = ["rerun", str(tmp_path / "recipe.toml"), "-o", str(tmp_path / "out"), "--quiet", "--anyway"]
+    assert main(command) == 0
+    told = capsys.readouterr().err
+    assert "the file has changed" in told
+    assert "fingerprint differs" in told
+    assert json.loads((tmp_path / "out" / "summary.json").read_text())["network"]["nodes"] == 35
+
+
+def test_what_was_written_too_is_written_again(tmp_path):
+    path = write_karate(tmp_path)
+    also = [
+        word for part in ("xlsx", "tsv", "core-lists", "set-lines", "map-svg", "map-pdf") for word in ("--also", part)
+    ]
+    assert main(["modules", str(path), "-o", str(tmp_path / "out"), *QUICK, *also, "--quiet"]) == 0
+    assert main(["rerun", str(tmp_path / "out" / "recipe.toml"), "-o", str(tmp_path / "again"), "--quiet"]) == 0
+    assert _files(tmp_path / "again") == _files(tmp_path / "out")
+    assert {"membership.xlsx", "map.pdf", "module_sets_core.tsv"} <= _files(tmp_path / "out").keys()
+    assert main(["modules", str(path), "-o", str(tmp_path / "out"), *QUICK, "--quiet"]) == 0  # replaces it as a whole
+    assert "membership.xlsx" not in _files(tmp_path / "out")
+
+
+def test_what_cannot_be_written_too_is_refused_before_the_work(tmp_path, capsys):
+    path = write_karate(tmp_path)
+    assert main(["modules", str(path), "-o", str(tmp_path / "out"), "--also", "picture"]) == 2
+    assert "choose from tsv, xlsx" in capsys.readouterr().err
+    nothing = ["--runs", "1", "--noise", "0", "--nulls", "0"]
+    assert main(["modules", str(path), "-o", str(tmp_path / "out"), *nothing, "--also", "core-lists"]) == 2
+    assert "how surely genes stay" in capsys.readouterr().err
 
 
 # sweep
