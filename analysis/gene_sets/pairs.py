@@ -114,7 +114,7 @@ def _header_order(row: tuple[str, str]) -> bool | None:
 
 
 def _has_two(line: str, sign: str) -> bool:
-    return len(_cells(line, sign)) == 2
+    return len(_cells(line, sign)) == 2 and (sign == "\t" or "\t" not in line)
 
 
 def _cells(line: str, sign: str) -> list[str]:
