@@ -21,7 +21,6 @@ from analysis.portrait.summary import (
 from analysis.portrait.uniform_network import uniform_network
 from tests.graphs import lettered, random_network, to_networkx
 
-
 # Computed with networkx; both have a diameter of 5.
 KNOWN = {
     "karate": {"transitivity": 0.25568, "clustering": 0.57064, "mean_path": 2.40820, "assortativity": -0.47561},
