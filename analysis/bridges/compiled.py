@@ -13,7 +13,7 @@ FARTHEST = 62
 
 
 @njit(cache=True)
-def search_between(rows: Any, masks: Any, sources: Any, homes: Any, table: Any) -> Any:
+def search_between(rows: Any, masks: Any, sources: Any, homes: Any, sums: Any) -> None:
     """Search breadth-first from up to 64 sources at once, one bit a source (Then et al. 2014).
 
     Parameters
@@ -26,13 +26,10 @@ def search_between(rows: Any, masks: Any, sources: Any, homes: Any, table: Any) 
         None of them blocked or silent.
     homes : pair of int32 arrays, shape (nodes,)
         Module of each node; its position in the table.
-    table : int64 array, shape (FARTHEST + 1, groups, groups)
-        Pairs (source, node) at each distance, by group, are added here; those within one module too.
-
-    Returns
-    -------
-    float
-        The sum of ``1 / distance`` over pairs in different modules.
+    sums : triple of arrays, to which is added
+        Pairs (source, node) at each distance, by group, those within one module too: int64, shape
+        (FARTHEST + 1, groups, groups). Sum of ``1 / distance`` over pairs in different modules, by node and by source:
+        float64, shape (nodes,) each.
     """
     blocked, silent = masks
     nodes = len(rows[0]) - 1
@@ -44,7 +41,7 @@ def search_between(rows: Any, masks: Any, sources: Any, homes: Any, table: Any) 
         bit = ONE << np.uint64(place)
         seen[sources[place]] |= bit
         front[sources[place]] |= bit
-    near, distance, moved = 0.0, 0, True
+    distance, moved = 0, True
     while moved:
         distance += 1
         _pass_on(rows, front, coming)
@@ -58,9 +55,7 @@ def search_between(rows: Any, masks: Any, sources: Any, homes: Any, table: Any) 
             seen[node] |= bits
             moved = True
             if not silent[node]:
-                apart = _count(bits, sources, homes, node, table[min(distance, FARTHEST)])
-                near += apart / distance
-    return near
+                _count(bits, sources, homes, (node, distance), sums)
 
 
 @njit(cache=True)
@@ -73,12 +68,16 @@ def _pass_on(rows: Any, front: Any, coming: Any) -> None:
 
 
 @njit(cache=True)
-def _count(bits: Any, sources: Any, homes: Any, node: int, table: Any) -> int:
-    """Add the sources that have reached a node to the table; return how many are of another module."""
-    apart = 0
+def _count(bits: Any, sources: Any, homes: Any, where: Any, sums: Any) -> None:
+    """Add the pairs of a node with the sources that have reached it."""
+    modules, groups = homes
+    table, by_node, by_source = sums
+    node, distance = where
+    level = min(distance, FARTHEST)
     for place in range(len(sources)):
         if (bits >> np.uint64(place)) & ONE:
             source = sources[place]
-            table[homes[1][source], homes[1][node]] += 1
-            apart += homes[0][source] != homes[0][node]
-    return apart
+            table[level, groups[source], groups[node]] += 1
+            if modules[source] != modules[node]:
+                by_node[node] += 1.0 / distance
+                by_source[source] += 1.0 / distance

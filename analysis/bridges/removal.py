@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from functools import cached_property
 from typing import Any
 
 import numpy as np
@@ -14,7 +15,7 @@ from analysis.network import FloatArray, IntArray, Network, locked
 
 GROUPS = 24
 EXACT_NODES = 1_000
-SOURCES = 128
+SOURCES, RANKING_SOURCES, CANDIDATE_SOURCES = 128, 64, 32
 AT_A_TIME = 64
 ROUNDING = 1e-12
 
@@ -138,7 +139,7 @@ class RankRemovals:
 
     def run(self, network: Network) -> FloatArray:
         """Take each out."""
-        probe = _Probe(network, self.modules, self.seed)
+        probe = _Probe(network, self.modules, self.seed, RANKING_SOURCES)
         cutting = set(network.igraph.articulation_points())
         rows = [probe.effect(int(node), cutting=int(node) in cutting) for node in self.nodes]
         return np.array(rows, np.float64).reshape(-1, 3)
@@ -167,7 +168,7 @@ def candidates(network: Network, modules: Modules, count: int = 300, seed: int =
 
     Betweenness (Freeman 1977) is that of paths from all genes of a small network, else from a sample of sources.
     """
-    sources = _sources(network, seed)
+    sources = _sources(network, seed, CANDIDATE_SOURCES)
     betweenness = np.array(network.igraph.betweenness(directed=False, sources=sources.tolist()))
     labels = modules.full_labels
     leaving = labels[network.sources] != labels[network.targets]
@@ -195,7 +196,7 @@ def gather_ranking(nodes: IntArray, found: Sequence[FloatArray]) -> RemovalRanki
 class _Probe:
     """Measures paths between modules from the same sources again and again."""
 
-    def __init__(self, network: Network, modules: Modules, seed: int) -> None:
+    def __init__(self, network: Network, modules: Modules, seed: int, most: int = SOURCES) -> None:
         adjacency = network.adjacency
         self.network = network
         self.modules = modules
@@ -204,43 +205,61 @@ class _Probe:
         shown = min(len(modules), GROUPS)
         self.homes = (labels, np.minimum(labels, shown).astype(np.int32))
         self.groups = shown + 1
-        self.sources = _sources(network, seed)
+        self.sources = _sources(network, seed, most)
 
-    def paths(self, silent: NDArray[np.bool_], *, blocked: bool) -> Paths:
+    def search(self, silent: NDArray[np.bool_], *, blocked: bool) -> tuple[NDArray[np.int64], FloatArray, FloatArray]:
+        """Return the table of distances, and the sums of 1 / distance by node and by source."""
         from analysis.bridges.compiled import FARTHEST, search_between
 
         table = np.zeros((FARTHEST + 1, self.groups, self.groups), np.int64)
+        sums = (table, np.zeros(len(silent)), np.zeros(len(silent)))
         closed = silent if blocked else np.zeros_like(silent)
         sources = self.sources[~silent[self.sources]]
-        near = 0.0
         for start in range(0, len(sources), AT_A_TIME):
-            part = sources[start : start + AT_A_TIME]
-            near += search_between(self.rows, (closed, silent), part, self.homes, table)
-        kept = ~silent
-        in_module = np.bincount(self.homes[0][kept], minlength=int(self.homes[0].max(initial=0)) + 1)
-        apart = int((kept.sum() - in_module[self.homes[0][sources]]).sum())
+            search_between(self.rows, (closed, silent), sources[start : start + AT_A_TIME], self.homes, sums)
+        return sums
+
+    def paths(self, silent: NDArray[np.bool_], *, blocked: bool) -> Paths:
+        """Return the paths among the genes that are not silent."""
+        table, near, _ = self.search(silent, blocked=blocked)
         pairs = table.sum(axis=0)
-        total = np.tensordot(np.arange(FARTHEST + 1), table, 1)
+        total = np.tensordot(np.arange(len(table)), table, 1)
         lengths = np.divide(total, pairs, out=np.full(pairs.shape, np.nan), where=pairs > 0)
-        return Paths(near / apart if apart else 0.0, locked(pairs), locked(lengths))
+        apart = self.pairs_apart(silent)
+        return Paths(float(near.sum()) / apart if apart else 0.0, locked(pairs), locked(lengths))
+
+    def pairs_apart(self, silent: NDArray[np.bool_]) -> int:
+        """Count the pairs (source, gene) in different modules, silent ones left out."""
+        labels, kept = self.homes[0], ~silent
+        sources = self.sources[kept[self.sources]]
+        in_module = np.bincount(labels[kept], minlength=int(labels.max(initial=0)) + 1)
+        return int((kept.sum() - in_module[labels[sources]]).sum())
+
+    @cached_property
+    def whole(self) -> tuple[FloatArray, FloatArray]:
+        """Sums of 1 / distance by node and by source with nothing taken out."""
+        _, by_node, by_source = self.search(np.zeros(self.network.node_count, bool), blocked=False)
+        return by_node, by_source
 
     def effect(self, node: int, *, cutting: bool) -> tuple[int, int, float]:
+        """Return genes lost to the giant component, modules split, share of efficiency lost, without one gene."""
         silent = np.zeros(self.network.node_count, bool)
         silent[node] = True
-        before, after = self.paths(silent, blocked=False), self.paths(silent, blocked=True)
+        by_node, by_source = self.whole
+        before = float(by_node.sum()) - by_node[node] - by_source[node]  # pairs with the gene itself do not count
+        after = float(self.search(silent, blocked=True)[1].sum())
         lost = 0
         if cutting:
             lost = _giant(self.network, np.zeros_like(silent), silent) - _giant(self.network, silent, silent)
         own = _modules_of(self.modules, np.array([node]))
         split = sum(len(_pieces(self.network, self.modules.members[module], silent)) > 1 for module in own)
-        share = 0.0 if before.efficiency == 0 else 1.0 - after.efficiency / before.efficiency
-        return lost, split, share
+        return lost, split, 1.0 - after / before if before > ROUNDING else 0.0
 
 
-def _sources(network: Network, seed: int) -> IntArray:
+def _sources(network: Network, seed: int, most: int) -> IntArray:
     if network.node_count <= EXACT_NODES:
         return np.arange(network.node_count, dtype=np.int32)
-    drawn = np.random.default_rng(seed).choice(network.node_count, SOURCES, replace=False)
+    drawn = np.random.default_rng(seed).choice(network.node_count, most, replace=False)
     return np.sort(drawn).astype(np.int32)
 
 
