@@ -21,7 +21,7 @@ from analysis.compare import Clustering, Comparison, ComparisonSettings, compare
 from analysis.compute import run_all
 from analysis.errors import CorymbError, InputError
 from analysis.evidence import HARVEST, method_of, run_study
-from analysis.handover import Bundle, Source, as_zip, bundle_files, report_from_plain
+from analysis.handover import Bundle, Source, as_zip, bundle_files, meaning_section, report_from_plain
 from analysis.intake import Reading, parse_network, read_network
 from analysis.modules import Modules
 from analysis.network import FloatArray, Network
@@ -334,7 +334,8 @@ class Desk:
             study = self.study(study_id)
             if study is None:
                 raise CorymbError("this clustering is not ready yet; wait for it, then hand it over")
-            files = bundle_files(self._bundle(study, parts))
+            bundle, sets = self._with_meaning(study_id, self._bundle(study, parts))
+            files = bundle_files(bundle) | sets
             raw = self.workspace.raw(study.network.fingerprint)
             if raw is not None:
                 files[f"{INPUT_FOLDER}/{raw[0]}"] = raw[1]
@@ -350,7 +351,9 @@ class Desk:
             return content
 
         names = sorted(self.workspace.names(study_id).items())
-        return self.jobs.start("packing", f"{study_id}:{names}:{parts}", work)
+        return self.jobs.start(
+            "packing", f"{study_id}:{names}:{parts}:{self.meaning.version(study_id, self.study(study_id))}", work
+        )
 
     def _bundle(self, study: Study, parts: tuple[str, ...] = ()) -> Bundle:
         """Return everything to be handed over; the input file travels in the zip, beside the recipe."""
@@ -362,6 +365,14 @@ class Desk:
             source = Source(name, hashlib.sha256(content).hexdigest(), f"{INPUT_FOLDER}/{name}")
         report = report_from_plain(self.workspace.report(fingerprint)) if source is not None else None
         return Bundle(study, report, source, parts)
+
+    def _with_meaning(self, study_id: str, bundle: Bundle) -> tuple[Bundle, dict[str, bytes]]:
+        """Return the bundle with the enrichment in the gene sets chosen, and their files, where there are any."""
+        found = self.meaning.for_handover(study_id, bundle.study, f"{INPUT_FOLDER}/gene_sets")
+        if found is None:
+            return bundle, {}
+        sections = (*bundle.sections, meaning_section(found.meaning, found.same_source))
+        return replace(bundle, meaning=found.meaning, meaning_request=found.request, sections=sections), found.files
 
     def packed(self, study_id: str) -> tuple[str, bytes] | None:
         """Return file name and content of a zip that was written, None where there is none."""

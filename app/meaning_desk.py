@@ -10,6 +10,8 @@ import json
 import threading
 from collections import OrderedDict
 from collections.abc import Mapping
+from dataclasses import dataclass
+from pathlib import PurePosixPath
 from typing import Any
 
 import numpy as np
@@ -23,7 +25,7 @@ from analysis.intake.decoding import decode
 from analysis.intake.unpacking import unpack
 from analysis.meaning import Meaning, MeaningSettings, ModuleGenes, find_meaning
 from analysis.network import Network
-from analysis.progress import Progress, portion
+from analysis.progress import Progress, portion, silent
 from analysis.study import Study
 from app.jobs import Jobs
 from app.places import sample_folder
@@ -52,6 +54,26 @@ NO_TEST = ("same_source",)
 AT_HAND = 4
 
 
+@dataclass(frozen=True, eq=False)
+class Handed:
+    """What of an enrichment is handed over.
+
+    Attributes
+    ----------
+    meaning : Meaning
+    request : MeaningRequest
+    files : dict of bytes
+        The files that it was made from, by path.
+    same_source : str
+        Whether the sets were made from the network's own interactions: `yes`, `no` or `unknown`.
+    """
+
+    meaning: Meaning
+    request: MeaningRequest
+    files: dict[str, bytes]
+    same_source: str
+
+
 class MeaningDesk:
     """Answers about gene sets; any thread may ask.
 
@@ -77,6 +99,7 @@ class MeaningDesk:
         InputError
             Where the bytes are not of this kind.
         """
+        file_name = PurePosixPath(file_name.replace("\\", "/")).name
         described = {"name": file_name, "sha256": hashlib.sha256(content).hexdigest()}
         if kind == GENE_SETS:
             if not content.strip():
@@ -176,11 +199,28 @@ class MeaningDesk:
         key = _key(study_id, chosen)
         return f"{key}:{chosen['same_source']}:{self._outcome(key) is not None}"
 
-    def request(self, fingerprint: str, folder: str) -> tuple[MeaningRequest, dict[str, bytes]] | None:
-        """Return what a recipe says of the gene sets, and their files by path within `folder`; None for none."""
-        chosen = self.chosen(fingerprint)
+    def for_handover(self, study_id: str, study: Study, folder: str) -> Handed | None:
+        """Return the enrichment of a study with what a recipe says of it; the files by path within `folder`.
+
+        None where no gene sets are chosen, or the modules cannot be tested with them (the station says why).
+        """
+        chosen = self.chosen(study.network.fingerprint)
         if chosen[GENE_SETS] is None:
             return None
+        key = _key(study_id, chosen)
+        outcome = self._outcome(key)
+        if outcome is None:
+            try:
+                outcome = self._test(study, chosen, silent)
+            except CorymbError as error:
+                outcome = str(error)
+            self._keep(key, outcome)
+        if isinstance(outcome, str):
+            return None
+        request, files = self._request(chosen, folder)
+        return Handed(outcome, request, files, chosen["same_source"])
+
+    def _request(self, chosen: Mapping[str, Any], folder: str) -> tuple[MeaningRequest, dict[str, bytes]]:
         files: dict[str, bytes] = {}
         sources: dict[str, Source] = {}
         for kind in KINDS:

@@ -12,6 +12,7 @@ from analysis.handover.summary import json_bytes
 from analysis.meaning import (
     ENRICHMENT_CAUTION,
     LEVEL_CAUTION,
+    SAME_SOURCE_CAUTION,
     SAME_SOURCE_UNKNOWN,
     Meaning,
     enrichment_table,
@@ -81,9 +82,17 @@ def meaning_bundle_files(bundle: MeaningBundle) -> dict[str, bytes]:
     }
 
 
-def meaning_section(meaning: Meaning) -> Section:
-    """Return the chapter of the report: the outcome in words, and the best sets of each module."""
-    return Section("Gene sets", (*meaning.sentences(), *CAUTIONS), _best_table(meaning))
+def meaning_section(meaning: Meaning, same_source: str = "unknown") -> Section:
+    """Return the chapter of the report: the outcome in words, and the best sets of each module.
+
+    Parameters
+    ----------
+    same_source : str
+        Whether the sets were made from the network's own interactions: `yes`, `no` or `unknown`.
+    """
+    circular = {"yes": (SAME_SOURCE_CAUTION,), "no": ()}.get(same_source, (SAME_SOURCE_UNKNOWN,))
+    sentences = (*meaning.sentences(), ENRICHMENT_CAUTION, LEVEL_CAUTION, *circular)
+    return Section("Gene sets", sentences, _best_table(meaning))
 
 
 def _best_table(meaning: Meaning) -> pd.DataFrame:

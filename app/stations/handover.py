@@ -25,6 +25,10 @@ FILES = (
     ("references.bib", "what the methods paragraph cites, as BibTeX"),
     ("recipe.toml", "repeats all of it: corymb rerun recipe.toml -o FOLDER"),
 )
+MEANING_FILES = (
+    ("enrichment.csv", "one row per module and gene set with a common gene, with q-values and the genes"),
+    ("spread.csv", "one row per gene set: over how many modules it is spread"),
+)
 CHOICES = {
     "tsv": "membership.tsv: the membership table with tabs",
     "xlsx": "membership.xlsx: both tables as a workbook; gene symbols are text, so that none becomes a date",
@@ -53,6 +57,11 @@ def state(view: View) -> str:
     return "stale" if any(recall(f"handed over {entry.id}") for entry in others) else "empty"
 
 
+def _files(view: View) -> tuple[tuple[str, str], ...]:
+    """Return what is always written, with the tables of gene sets where such were given."""
+    return FILES + (MEANING_FILES if view.desk.meaning.chosen(view.fingerprint)["gene_sets"] else ())
+
+
 def render(view: View) -> Pane:
     """Return the list of files, the cautions and the button."""
     if view.study is None:
@@ -62,7 +71,7 @@ def render(view: View) -> Pane:
         sentence(f"{len(view.study.modules)} modules, {three} of three genes or more, as one zip file.", first=True),
         sentence(f"Shown and written: {view.study.shown}. The input file goes in too, so that the recipe works."),
         heading("What will be written"),
-        table(["file", "content"], [list(each) for each in FILES], name="Files"),
+        table(["file", "content"], [list(each) for each in _files(view)], name="Files"),
         heading("What may be written too"),
         dcc.Checklist(
             _choices(view.study),
