@@ -19,11 +19,12 @@ from analysis.methods.louvain import Louvain
 from analysis.methods.settings import settings_of
 from analysis.modules import Modules, standard_modularity
 from analysis.network import FloatArray, IntArray, Network
-from analysis.progress import Progress, portion, silent
+from analysis.overlap.cliques import CLIQUE_SECONDS, too_long
+from analysis.progress import Progress, portion, silent, within
 from analysis.study import SUGGEST, NullDraws, Study, StudySettings
 from analysis.study_tables import ModuleEvidence, evidence_table, membership_table
 from analysis.trust.chains import ChainTask, resolution_grid
-from analysis.trust.ensemble import Recurrence, consensus, noise_tasks, score_recurrence, seed_tasks
+from analysis.trust.ensemble import FindCover, Recurrence, consensus, noise_tasks, score_recurrence, seed_tasks
 from analysis.trust.significance import against_nulls, ignore, verdict
 from analysis.trust.support import CopySettings, ModuleSupport, copy_tasks, score_support
 from analysis.trust.sweep import SweepSettings, run_sweep
@@ -173,8 +174,10 @@ def _run_ensemble(
     progress: Progress,
 ) -> Ensemble:
     if isinstance(method, CliquePercolation):
-        progress(0.0, "finding the cliques")
-        return Ensemble(method.find(network), (), "the exact communities, the same in every run", NAN)
+        limit = within(progress, CLIQUE_SECONDS, too_long(method.k))
+        cover = [FindCover(method, settings.seed)]
+        found = run_all(compute, network, cover, progress=limit, phrase="finding the cliques")[0]
+        return Ensemble(found, (), "the exact communities, the same in every run", NAN)
     tasks = seed_tasks(method, settings.runs, settings.seed)
     runs = run_all(compute, network, tasks, progress=progress, phrase=f"{settings.runs} runs with different seeds")
     seed_ami = float(pairwise_ami(runs).mean()) if len(runs) > 1 else NAN

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import time
 from collections.abc import Callable
 
 Progress = Callable[[float, str], None]
@@ -17,5 +18,17 @@ def portion(progress: Progress, start: float, end: float) -> Progress:
 
     def report(fraction: float, phrase: str) -> None:
         progress(start + (end - start) * fraction, phrase)
+
+    return report
+
+
+def within(progress: Progress, seconds: float, error: Exception) -> Progress:
+    """Raise the error once the work has taken longer; worker processes are then stopped, as when a user stops them."""
+    end = time.monotonic() + seconds
+
+    def report(fraction: float, phrase: str) -> None:
+        if time.monotonic() > end:
+            raise error
+        progress(fraction, phrase)
 
     return report

@@ -15,6 +15,8 @@ from analysis.network import IntArray, Network
 CLIQUE_LIMIT = 1_000_000
 WORK_LIMIT, LEVELS_LIMIT = 20_000_000_000, 2_000_000_000
 """Looks at a clique in the list of a node, for one k and for all: some 20 to 40 seconds."""
+CLIQUE_SECONDS = 90.0
+"""After this time the search for cliques is stopped, where it runs in a worker process."""
 
 
 @dataclass(frozen=True, eq=False)
@@ -89,6 +91,14 @@ def too_much_work(k: int, remedy: str = "raise k") -> LimitError:
     return LimitError(
         f"the cliques of {k} or more nodes overlap so much that joining them would take too long; "
         f"{remedy}, or leave out weak edges with --min-weight"
+    )
+
+
+def too_long(k: int) -> LimitError:
+    """Return the error for a search that has not ended in time."""
+    return LimitError(
+        f"the cliques of {k} or more nodes were not all found in {CLIQUE_SECONDS:.0f} s; "
+        "raise k, or leave out weak edges with --min-weight"
     )
 
 

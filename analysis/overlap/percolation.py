@@ -78,6 +78,15 @@ class Percolation:
         return Modules.from_members(self.node_count, self.at(k).members)
 
 
+@dataclass(frozen=True, slots=True)
+class FindEveryK:
+    """Task: the communities of every k, in a worker process so that it can be stopped."""
+
+    def run(self, network: Network) -> Percolation:
+        """Find them."""
+        return percolate(network)
+
+
 def percolate(network: Network) -> Percolation:
     """Find the k-clique communities of every k at once (Palla, Derényi, Farkas & Vicsek 2005), exactly.
 

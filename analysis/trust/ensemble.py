@@ -34,6 +34,18 @@ class FindLabels:
 
 
 @dataclass(frozen=True, slots=True)
+class FindCover:
+    """Task: clique percolation for one k, in a worker process so that it can be stopped."""
+
+    method: CliquePercolation
+    seed: int
+
+    def run(self, network: Network) -> Modules:
+        """Run the method."""
+        return self.method.find(network, seed=self.seed)
+
+
+@dataclass(frozen=True, slots=True)
 class FindOnNoisyCopy:
     """Task: one run on a copy with a share of the edges left out; returns the groups' members."""
 
