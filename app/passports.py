@@ -50,7 +50,7 @@ def module_passport(view: View, module: int) -> Pane:
         _name_field(row),
         button("Name it", {"type": "name-module", "index": module}),
         button("Close-up", {"type": "close-up", "kind": "module", "index": module}),
-        button("Hand over", {"type": "go", "station": "handover"}, kind="button primary"),
+        button("Hand over", {"type": "go-on", "station": "handover"}, kind="button primary"),
     ]
     return Pane("module passport", body, actions)
 

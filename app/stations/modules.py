@@ -61,7 +61,7 @@ def render(view: View) -> Pane:
         *_settings(view),
         *_trail(view),
     ]
-    return Pane(TITLE, body, [button("Hand over genes", {"type": "go", "station": "handover"}, kind="button primary")])
+    return Pane(TITLE, body, [button("Hand over genes", {"type": "go-on", "station": "handover"}, kind="button primary")])
 
 
 def table_of(view: View, kind: str | None) -> Any:

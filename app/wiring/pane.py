@@ -28,12 +28,13 @@ def wire(app: Dash, desk: Desk) -> None:
         Output("pick", "data", allow_duplicate=True),
         Output("fault", "data", allow_duplicate=True),
         Input({"type": "go", "station": ALL}, "n_clicks"),
+        Input({"type": "go-on", "station": ALL}, "n_clicks"),
         Input({"type": "back", "index": ALL}, "n_clicks"),
         Input({"type": "keys", "index": ALL}, "n_clicks"),
         prevent_initial_call=True,
     )
-    def go(_clicks: Any, _back: Any, _keys: Any) -> Any:
-        if pressed("go"):
+    def go(_clicks: Any, _on: Any, _back: Any, _keys: Any) -> Any:
+        if pressed("go") or pressed("go-on"):
             return ctx.triggered_id["station"], None, ""
         if pressed("back"):
             return no_update, None, no_update
