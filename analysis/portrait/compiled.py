@@ -91,7 +91,7 @@ def largest_components(
     largest : int64 array, shape (nodes + 1,)
         By the number of nodes removed.
     others : float64 array, shape (nodes + 1,)
-        ``Σ s² / Σ s`` over all components but the largest, 0 where there is no other: its peak marks where a network
+        ``Σ s² / n`` over all components but the largest, `n` the nodes that are left; its peak marks where a network
         falls apart (Stauffer & Aharony 1994).
     """
     nodes = len(order)
@@ -120,8 +120,7 @@ def largest_components(
             size[root] += size[other]
         top = max(top, size[root])
         largest[place] = top
-        rest = nodes - place - top
-        others[place] = (squares - float(top) * top) / rest if rest > 0 else 0.0
+        others[place] = (squares - float(top) * top) / (nodes - place)
     return largest, others
 
 

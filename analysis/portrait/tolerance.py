@@ -37,7 +37,7 @@ class RemovalCurve:
     low, high : float64 arrays, shape (points,)
         The least and the largest over draws; equal to `giant` where there is only one order.
     critical : float
-        Share removed at which the other components are largest on average (their peak), where it falls apart.
+        Share removed at which the other components are largest (the peak of ``Σ s² / n``), where it falls apart.
     robustness : float
         ``R = (1/N) Σ S(q)`` over q = 1 … N genes removed (Schneider et al. 2011, eq. 1): between 0 and ½.
     draws : int
@@ -95,6 +95,16 @@ class Tolerance:
         )
         return f"{told} {self.left_out}" if self.left_out else told
 
+    def critical_sentence(self) -> str:
+        """Say where random failure would part a network with these degrees and nothing else."""
+        if np.isnan(self.random_critical):
+            return "A random network with these degrees has no giant component that could be lost."
+        return (
+            f"A random network with these degrees falls apart once {_percent(self.random_critical)} of its genes are "
+            f"gone at random (κ = {self.kappa:.1f}); the table has where this one does, by the peak of its other "
+            "components."
+        )
+
 
 @dataclass(frozen=True, eq=False)
 class Removals:
@@ -106,7 +116,7 @@ class Removals:
     sizes : int64 array, shape (nodes + 1,)
         Genes of the largest component, by number removed.
     others : float64 array, shape (nodes + 1,)
-        Mean size of the other components, as a gene meets it.
+        Sum of the squared sizes of the other components, per gene that is left.
     """
 
     strategy: str

@@ -8,11 +8,14 @@ from urllib.parse import quote
 from dash import html
 
 from analysis.handover.portrait import PortraitFigure, portrait_figures
-from analysis.handover.portrait.tables import WORDS, figure_rows
+from analysis.handover.portrait.figures import CURVES
+from analysis.handover.portrait.tables import REMOVAL_HEAD, WORDS, figure_rows, removal_rows
 from analysis.network import Network
 from analysis.portrait.hubs import CAUTION, SOURCE, Hubs
 from analysis.portrait.summary import SOURCE as SUMMARY_SOURCE
 from analysis.portrait.summary import Summary
+from analysis.portrait.tolerance import SOURCE as TOLERANCE_SOURCE
+from analysis.portrait.tolerance import Tolerance
 from app.parts import button, heading, link, notice, number, sentence, sentences, table
 from app.portraits import is_drawn, is_on_its_way, portrait_of
 from app.view import Pane, View
@@ -42,7 +45,8 @@ def render(view: View) -> Pane:
     body: list[Any] = [*_summary(portrait.summary)]
     for figure in portrait_figures(network, portrait):
         body += [heading(figure.title), *_figure(figure)]
-        if figure.key == "removals":
+        if figure.key == "removals" and portrait.tolerance is not None:
+            body += _removals(portrait.tolerance)
             body.append(_removal(view.fingerprint))
     if portrait.tolerance is None:
         body.append(_removal(view.fingerprint))
@@ -102,6 +106,16 @@ def _figure(figure: PortraitFigure) -> list[Any]:
         **{"data-name": figure.key, "data-csv": figure.data().decode()},
     )
     return [sentence(figure.reading), drawn]
+
+
+def _removals(tolerance: Tolerance) -> list[Any]:
+    rows = [
+        [CURVES[row["removal"]][0], *(number(float(row[key])) for key in REMOVAL_HEAD)]
+        for row in removal_rows(tolerance)
+    ]
+    head = ["genes removed", "falls apart at", "R", "without 5 %", "without 20 %"]
+    shown = table(head, rows, numeric=[1, 2, 3, 4], name="Removals")
+    return [sentence(tolerance.critical_sentence()), html.Div(shown, title=f"After {TOLERANCE_SOURCE}")]
 
 
 def _removal(fingerprint: str) -> html.Div:

@@ -4,8 +4,8 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 
-from analysis.handover.portrait.figures import PortraitFigure
-from analysis.handover.portrait.tables import WORDS, figure_rows
+from analysis.handover.portrait.figures import CURVES, PortraitFigure
+from analysis.handover.portrait.tables import REMOVAL_HEAD, WORDS, figure_rows, removal_rows
 from analysis.handover.report.markup import Child, Markup, short, tag
 from analysis.handover.report.style import STYLE
 from analysis.handover.report.wording import figure as shown
@@ -14,6 +14,7 @@ from analysis.network import Network
 from analysis.portrait import Portrait
 from analysis.portrait.hubs import CAUTION, Hubs
 from analysis.portrait.summary import SOURCE
+from analysis.portrait.tolerance import Tolerance
 from analysis.verdicts import USE_CAUTION
 from analysis.version import versions
 
@@ -39,6 +40,7 @@ def portrait_page(network: Network, portrait: Portrait, figures: Sequence[Portra
         tag("ul", [tag("li", each) for each in rest], class_="more") if rest else None,
         _figures_table(portrait),
         tag("section", tag("h2", "Figures"), tag("div", [_panel(each) for each in figures], class_="row")),
+        _removals(portrait.tolerance) if portrait.tolerance is not None else None,
         _hubs(network, portrait.hubs) if portrait.hubs is not None else None,
     )
     foot = tag("footer", f"Written by corymb {versions()['corymb']}. {USE_CAUTION}")
@@ -67,6 +69,12 @@ def _figures_table(portrait: Portrait) -> Markup | None:
     nulls = f"Beside {portrait.settings.nulls} random networks with the same degrees and as many with the same number "
     note = tag("p", f"{nulls}of edges. After {SOURCE}.", class_="note")
     return tag("section", tag("h2", "The network as a whole"), note, _table(head, rows))
+
+
+def _removals(tolerance: Tolerance) -> Markup:
+    rows = [[CURVES[row["removal"]][0], *(_shown(row[key]) for key in REMOVAL_HEAD)] for row in removal_rows(tolerance)]
+    note = tag("p", tolerance.critical_sentence(), class_="note")
+    return tag("section", tag("h2", "Removals"), note, _table(["genes removed", *REMOVAL_HEAD.values()], rows))
 
 
 def _hubs(network: Network, hubs: Hubs) -> Markup:

@@ -33,6 +33,13 @@ WORDS = {
     "mean_path": "mean shortest path",
 }
 
+REMOVAL_HEAD = {
+    "critical_share": "falls apart at",
+    "robustness": "R",
+    "giant_without_5_percent": "largest component without 5 %",
+    "giant_without_20_percent": "without 20 %",
+}
+
 
 def figure_rows(summary: Summary) -> list[dict[str, Any]]:
     """Return one row a figure: its name, value, and mean, spread and z over both kinds of null networks."""
