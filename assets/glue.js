@@ -246,6 +246,13 @@
       return noUpdate();
     },
 
+    /** Another station or passport is read from its beginning. */
+    top() {
+      const body = document.getElementById("pane-body");
+      if (body) body.scrollTop = 0;
+      return noUpdate();
+    },
+
     save(order) {
       if (!order) return noUpdate();
       const anchor = document.createElement("a");

@@ -24,6 +24,7 @@ def wire(app: Dash) -> None:
     run("ruler", Input("ruler-data", "data"), Input("wanted", "data"), Input("shown", "data"))
     run("select", Input("pick", "data"), Input("shown", "data"))
     run("fit", Input("closeup", "elements"), Input("drawing-kind", "data"))
+    run("top", Input("station", "data"), Input("pick", "data"))
     run("save", Input("save-order", "data"))
     run("theme", Input("theme", "n_clicks"))
     run("projector", Input("projector", "n_clicks"))
