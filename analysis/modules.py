@@ -276,7 +276,7 @@ def evidence_per_member(
     expected = np.minimum(scale * strength[use] ** 2 / (4 * total) / pairs[use], ceiling)
     with np.errstate(divide="ignore", invalid="ignore"):
         divergence = found * np.log(found / expected) + (1 - found) * np.log((1 - found) / (1 - expected))
-    divergence = np.where(found > expected, divergence, 0.0)
+    divergence = np.where(found > expected, np.maximum(divergence, 0.0), 0.0)  # rounding may fall below 0
     evidence[use] = pairs[use] / size[use] * divergence
     return evidence
 
