@@ -28,6 +28,7 @@ MODULES_SHOWN = 40
 SETS_A_MODULE = 3
 PAIRS_SHOWN = 20
 SETS_SHOWN = 30
+ANSWERS = {"yes": "yes", "no": "no", "unknown": "not known"}
 
 
 def state(view: View) -> str:
@@ -95,16 +96,22 @@ def _drop_area(view: View) -> list[Any]:
 
 def _same_source(chosen: dict[str, Any]) -> list[Any]:
     """Ask whether the sets were made from the same interactions, and warn."""
-    options = [
-        {"label": "yes", "value": "yes"},
-        {"label": "no", "value": "no"},
-        {"label": "not known", "value": "unknown"},
-    ]
-    question = html.Fieldset(
+    answers = html.Div(
         [
-            html.Legend(SAME_SOURCE_QUESTION, className="field-label"),
-            dcc.RadioItems(options, chosen["same_source"], id="same-source", inline=True, className="choices"),
+            button(
+                words,
+                {"type": "same-source", "answer": answer},
+                kind="",
+                **{"aria-pressed": "true" if chosen["same_source"] == answer else "false"},
+            )
+            for answer, words in ANSWERS.items()
         ],
+        className="segments",
+        role="group",
+        **{"aria-labelledby": "same-source-question"},
+    )
+    question = html.Div(
+        [html.Div(SAME_SOURCE_QUESTION, className="field-label", id="same-source-question"), answers],
         className="question",
     )
     warning = {"yes": SAME_SOURCE_CAUTION, "unknown": SAME_SOURCE_UNKNOWN}.get(chosen["same_source"])
@@ -164,6 +171,7 @@ def _naming(meaning: Meaning, module: int, given: str) -> html.Div:
         debounce=False,
     )
     label = meaning.enrichment.modules.labels[module]
+    named = html.Label([html.Span(f"name of {label}", className="unseen"), box], className="naming-field")
     take = button(
         "Named" if given else "Name it",
         {"type": "take-name", "index": module},
@@ -171,7 +179,7 @@ def _naming(meaning: Meaning, module: int, given: str) -> html.Div:
         title=proposal.reason if proposal else "",
         **{"aria-label": f"Name {label}"},
     )
-    return html.Div([box, take], className="naming")
+    return html.Div([named, take], className="naming")
 
 
 def _all_pairs(meaning: Meaning) -> list[Any]:

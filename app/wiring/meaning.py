@@ -77,13 +77,15 @@ def wire(app: Dash, desk: Desk) -> None:
 
     @app.callback(
         Output("meaning-chosen", "data", allow_duplicate=True),
-        Input("same-source", "value"),
+        Input({"type": "same-source", "answer": ALL}, "n_clicks"),
         State("at-hand", "data"),
         State("meaning-chosen", "data"),
         prevent_initial_call=True,
     )
-    def answer(same: str | None, fingerprint: str | None, version: int) -> Any:
-        return _change(desk, fingerprint, version, {"same_source": same} if same else {})
+    def answer(_clicks: Any, fingerprint: str | None, version: int) -> Any:
+        if not pressed("same-source"):
+            return no_update
+        return _change(desk, fingerprint, version, {"same_source": ctx.triggered_id["answer"]})
 
     @app.callback(
         Output("meaning-chosen", "data", allow_duplicate=True),

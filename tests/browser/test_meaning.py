@@ -72,7 +72,7 @@ def test_another_name_is_typed_and_the_circle_is_named(page: Page):
         "() => document.querySelectorAll('.naming button')[1].textContent === 'Named'", timeout=PATIENCE
     )
     assert page.locator(".naming input").nth(1).input_value() == "the transport group"
-    page.locator("#same-source").get_by_text("yes").click()
+    page.get_by_role("button", name="yes", exact=True).click()
     page.get_by_text("the agreement is circular").wait_for()
 
 
