@@ -1,0 +1,154 @@
+"""Other clusterings in a real Chromium: by the ruler, the question, the method; what stays and what follows."""
+
+from __future__ import annotations
+
+import re
+from collections import Counter
+from collections.abc import Callable, Iterator
+
+import networkx as nx
+import numpy as np
+import pytest
+from numpy.typing import NDArray
+from playwright.sync_api import expect
+
+from tests.browser.networks import write_les_miserables
+from tests.browser.screen import Screen
+from tests.dashboard import served
+
+NO_MODULE = 65535
+STAYS = 0.9  # overlap of a module before and after, as a Jaccard index
+DRAWN_IN_COLOUR = 8  # genes; smaller modules may be grey
+
+
+@pytest.fixture
+def wide(screen: Screen) -> Screen:
+    """Return a window on the sample network at resolution 1, wherever an earlier test has left it."""
+    first = screen.pane.get_by_role("button", name="Leiden, wide neighbourhoods, 1, seed 1")
+    if first.count() and screen.ruler.get_attribute("aria-valuenow") != "1":
+        with screen.another_clustering():
+            first.click()
+    screen.fill_ruler()
+    return screen
+
+
+@pytest.fixture(scope="module")
+def small_address(tmp_path_factory: pytest.TempPathFactory) -> Iterator[str]:
+    folder = tmp_path_factory.mktemp("small")
+    with served(folder / "workspace", str(write_les_miserables(folder))) as url:
+        yield url
+
+
+@pytest.fixture
+def small(opened: Callable[..., Screen], small_address: str) -> Screen:
+    return opened(small_address)
+
+
+def kept_modules(before: NDArray[np.uint16], after: NDArray[np.uint16]) -> list[NDArray[np.int64]]:
+    """Return the genes of the modules that hardly changed."""
+    kept = []
+    for module in range(int(before[before != NO_MODULE].max()) + 1):
+        group = before == module
+        fate, shared = Counter(after[group].tolist()).most_common(1)[0]
+        if group.sum() >= DRAWN_IN_COLOUR and shared / (group | (after == fate)).sum() >= STAYS:
+            kept.append(np.flatnonzero(group & (after == fate)))
+    return kept
+
+
+def main_colour(colours: NDArray[np.uint8], genes: NDArray[np.int64]) -> tuple[int, ...]:
+    return Counter(map(tuple, colours[genes].tolist())).most_common(1)[0][0]
+
+
+def test_dragging_the_marker_splits_modules_where_they_stand(wide: Screen):
+    modules, labels, colours, positions = wide.modules(), wide.labels(), wide.colours(), wide.positions()
+    edge_draws = wide.stats()["edgeDraws"]
+    marker = wide.page.locator("#ruler .ruler-marker").bounding_box()
+    x, y = marker["x"] + marker["width"] / 2, marker["y"] + marker["height"] / 2
+    wide.page.mouse.move(x, y)
+    with wide.another_clustering():
+        wide.page.mouse.down()
+        wide.page.mouse.move(x + 120, y, steps=6)
+        expect(wide.page.locator("#state-count")).not_to_contain_text(re.compile(f"^{modules} modules"))  # while held
+        wide.page.mouse.up()
+    assert wide.modules() > modules
+    assert wide.row_count("module-grid") == wide.modules()
+    np.testing.assert_array_equal(wide.positions(), positions)
+    assert wide.stats()["edgeDraws"] == edge_draws
+    kept = kept_modules(labels, wide.labels())
+    assert len(kept) >= 3
+    now = wide.colours()
+    assert [main_colour(now, genes) for genes in kept] == [main_colour(colours, genes) for genes in kept]
+    assert (now != colours).any()
+    line = f"Leiden, wide neighbourhoods, {float(wide.ruler.get_attribute('aria-valuenow')):.2g}"
+    expect(wide.pane.locator("[aria-current=true]")).to_contain_text(line)
+
+
+def test_the_arrow_keys_move_the_marker(wide: Screen):
+    modules = wide.modules()
+    wide.ruler.focus()
+    with wide.another_clustering():
+        for _ in range(3):
+            wide.page.keyboard.press("ArrowRight")
+    assert float(wide.ruler.get_attribute("aria-valuenow")) > 1
+    assert wide.modules() > modules
+    with wide.another_clustering():
+        wide.page.keyboard.press("Home")
+    assert wide.modules() < modules
+    assert wide.ruler.get_attribute("aria-valuenow") == wide.ruler.get_attribute("aria-valuemin")
+
+
+def test_a_press_on_the_suggestion_goes_there(wide: Screen):
+    suggested = wide.page.locator("#state-suggestion button")
+    value = suggested.inner_text()
+    with wide.another_clustering():
+        suggested.click()
+    assert float(wide.ruler.get_attribute("aria-valuenow")) == pytest.approx(float(value), rel=0.05)
+
+
+def test_the_other_question_has_its_own_ruler(wide: Screen):
+    curve = wide.page.locator("#ruler .ruler-curve").get_attribute("d")
+    tight = wide.page.locator("#question-switch").get_by_role("button", name="tight groups")
+    with wide.another_clustering():
+        tight.click()
+    expect(tight).to_have_attribute("aria-pressed", "true")
+    expect(wide.page.locator("#state-unit")).to_have_text("inside density")
+    expect(wide.pane).to_contain_text("groups whose members are joined")
+    wide.fill_ruler()
+    assert wide.page.locator("#ruler .ruler-curve").get_attribute("d") != curve
+    assert wide.row_count("module-grid") == wide.modules()
+
+
+def test_clique_percolation_finds_what_networkx_finds(small: Screen):
+    with small.another_clustering():
+        small.choose("method", "clique percolation")
+    for k in (4, 5):
+        if k != 4:
+            with small.another_clustering():
+                small.page.locator("#k").fill(str(k))
+                small.page.locator("#k").press("Enter")
+        communities = list(nx.community.k_clique_communities(nx.les_miserables_graph(), k))
+        assert small.modules() == len(communities)
+        expect(small.pane.locator("[aria-current=true]")).to_have_text(f"clique percolation, k = {k}")
+        small.page.locator("#table-kind").get_by_text("genes").click()
+        expect(small.rows("gene-grid").first).to_be_visible()
+        assert small.row_count("gene-grid") == sum(len(each) for each in communities)
+    small.ruler.focus()
+    with small.another_clustering():  # moving the marker asks for a resolution again
+        small.page.keyboard.press("ArrowRight")
+    expect(small.pane.locator("[aria-current=true]")).to_contain_text("Leiden, wide neighbourhoods")
+
+
+def test_louvain_harvest_and_another_seed_each_leave_a_line_in_the_trail(small: Screen):
+    for option, line in (("Louvain", "Louvain, wide neighbourhoods"), ("harvest", "harvest, seed 1")):
+        with small.another_clustering():
+            small.choose("method", option)
+        expect(small.pane.locator("[aria-current=true]").first).to_contain_text(line)
+    with small.another_clustering():
+        small.choose("method", "Leiden")
+    with small.another_clustering():
+        small.page.locator("#seed").fill("2")
+        small.page.locator("#seed").press("Enter")
+    expect(small.pane.locator("[aria-current=true]")).to_contain_text("seed 2")
+    with small.another_clustering():
+        small.pane.get_by_role("button", name="Louvain, wide neighbourhoods").click()
+    expect(small.page.locator("#method")).to_have_text("Louvain")
