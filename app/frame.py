@@ -58,6 +58,8 @@ def _stores() -> list[Any]:
         dcc.Store(id="names-version", storage_type="memory", data=0),
         dcc.Store(id="ruler-data", storage_type="memory"),
         dcc.Store(id="map-order", storage_type="memory"),
+        dcc.Store(id="map-mask", storage_type="memory"),
+        dcc.Store(id="taken-out", storage_type="memory"),
         dcc.Store(id="colour-order", storage_type="memory"),
         dcc.Store(id="save-asked", storage_type="memory"),
         dcc.Store(id="save-order", storage_type="memory"),

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping
 from dataclasses import dataclass
 from functools import cached_property
 from typing import Any
@@ -76,6 +77,27 @@ class Percolation:
     def modules(self, k: int) -> Modules:
         """Return the communities of one k as a cover."""
         return Modules.from_members(self.node_count, self.at(k).members)
+
+    def to_arrays(self) -> dict[str, NDArray[Any]]:
+        """Return it as four flat arrays, to be kept."""
+        groups = [group for level in self.levels for group in level.members]
+        return {
+            "nodes": np.array([self.node_count]),
+            "k": np.repeat([level.k for level in self.levels], [len(level.members) for level in self.levels]),
+            "sizes": np.array([len(group) for group in groups], np.int64),
+            "members": np.concatenate([np.zeros(0, np.int32), *groups]),
+            "parents": np.concatenate([np.zeros(0, np.int32), *[level.parents for level in self.levels]]),
+        }
+
+    @classmethod
+    def from_arrays(cls, arrays: Mapping[str, NDArray[Any]]) -> Percolation:
+        """Return it again."""
+        groups = np.split(arrays["members"], np.cumsum(arrays["sizes"])[:-1])
+        levels = []
+        for k in np.unique(arrays["k"]).tolist():
+            places = np.flatnonzero(arrays["k"] == k)
+            levels.append(_level(k, [groups[place] for place in places], arrays["parents"][places]))
+        return cls(int(arrays["nodes"][0]), tuple(levels))
 
 
 @dataclass(frozen=True, slots=True)

@@ -6,7 +6,7 @@ A station module has `KEY`, `TITLE`, `state(view)` (`done`, `stale` or `empty`) 
 
 from __future__ import annotations
 
-from app.stations import handover, intake, meaning, modules, portrait, trust
+from app.stations import bridges, handover, intake, meaning, modules, portrait, trust
 
-STATIONS = {station.KEY: station for station in (intake, portrait, modules, trust, meaning, handover)}
+STATIONS = {station.KEY: station for station in (intake, portrait, modules, trust, bridges, meaning, handover)}
 START = modules.KEY

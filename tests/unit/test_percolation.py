@@ -104,6 +104,17 @@ def test_no_edges_and_no_triangles():
     assert communities(ring, 3) == []
 
 
+@pytest.mark.parametrize("edges", [0, 20, 150])
+def test_it_can_be_kept(edges: int):
+    found = percolate(random_network(1, nodes=30, edges=edges))
+    again = Percolation.from_arrays(found.to_arrays())
+    assert again.node_count == 30
+    assert [level.k for level in again.levels] == [level.k for level in found.levels]
+    for one, other in zip(again.levels, found.levels, strict=True):
+        assert [group.tolist() for group in one.members] == [group.tolist() for group in other.members]
+        assert one.parents.tolist() == other.parents.tolist()
+
+
 def test_k_below_two_is_refused(karate):
     with pytest.raises(SettingError, match="at least 2"):
         percolate(karate).at(1)
