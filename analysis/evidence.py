@@ -151,6 +151,7 @@ def _with_resolution(
     """Put a number where the resolution was to be suggested; return it with the reason."""
     if settings.resolution != SUGGEST or settings.method == CliquePercolation.key:
         return settings, ""
+    method_of(settings.at(resolution=1.0))  # what is wrong with the method is said before the sweep, not after it
     asked = SweepSettings(quality=settings.quality, seed=settings.seed, noise=settings.noise or SweepSettings().noise)
     suggestion = run_sweep(network, asked, compute, progress).suggestion
     return settings.at(resolution=float(suggestion.resolution)), suggestion.reason

@@ -9,7 +9,7 @@ import math
 
 from analysis.study import Study
 
-STABLE, PATTERN = 0.75, 0.6  # Hennig 2007: above 0.75 a stable cluster, 0.6 to 0.75 a pattern, below not to be trusted
+STABLE, PATTERN = 0.75, 0.6  # shares of noisy copies; a convention, after Hennig's (2007) marks of the mean Jaccard
 LEVEL = 0.05
 STRUCTURE_CAUTION = "A group in the drawing is not yet a function: structure alone does not show what genes do."
 DEGREE_CAUTION = "A protein's degree also reflects how much it was studied."
