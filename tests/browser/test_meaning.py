@@ -14,11 +14,6 @@ if TYPE_CHECKING:
     from playwright.sync_api import Browser, Page
 
 PATIENCE = 60_000
-WORK_IS_DONE = """() => {
-  const text = (id) => document.getElementById(id)?.textContent ?? "";
-  return text("progress-area") === "" && text("state-count") !== "" && text("state-suggestion") !== "";
-}"""
-"""What comes in later draws the pane anew."""
 
 
 @pytest.fixture(scope="module")
@@ -35,7 +30,8 @@ def page(browser: Browser, address: str) -> Iterator[Page]:
     page.on("pageerror", lambda error: faults.append(str(error)))
     page.set_default_timeout(PATIENCE)
     page.goto(address)
-    page.wait_for_function(WORK_IS_DONE, timeout=2 * PATIENCE)
+    # once the clustering is there, nothing draws the pane anew
+    page.locator('#path button[data-state="done"]', has_text="Modules").wait_for(timeout=2 * PATIENCE)
     page.get_by_role("button", name="Meaning").click()
     yield page
     context.close()
