@@ -83,15 +83,21 @@
     const { count, largest } = pieces(mask);
     const share = Math.round((100 * largest) / mask.length);
     const least = gone ? removal.degrees[removal.order[gone - 1]] : 0;
-    area.querySelector("output").textContent = gone
-      ? `${gone.toLocaleString("en")} genes gone, all of ${least} edges or more: the largest component holds ${share}\u00a0% of all genes; ${count.toLocaleString("en")} components.`
-      : `None removed: the largest component holds ${share}\u00a0% of all genes; ${count.toLocaleString("en")} components.`;
+    const genes = gone === 1 ? "1 gene" : `${gone.toLocaleString("en")} genes`;
+    const taken = gone ? `${genes} gone, all of ${least} edges or more` : "None removed";
+    const parts = count === 1 ? "1 component" : `${count.toLocaleString("en")} components`;
+    area.querySelector("output").textContent = `${taken}: the largest component holds ${share}\u00a0% of all genes; ${parts}.`;
   }
 
   async function remove(area, share) {
     const turn = (removal.turn += 1);
     removal.share = share;
-    if (!removal.order && !(await learn(area.dataset.url))) return;
+    try {
+      if (!removal.order && !(await learn(area.dataset.url))) return;
+    } catch (error) {
+      area.querySelector("output").textContent = `The network could not be fetched; is corymb still running? (${error.message})`;
+      return;
+    }
     if (turn !== removal.turn) return;
     const gone = Math.round((removal.order.length * share) / 100);
     const mask = new Uint8Array(removal.order.length);

@@ -61,7 +61,8 @@ class Hierarchy:
         """Say whether clustering falls with the degree, and whether the degrees alone would make it fall."""
         if np.isnan(self.slope):
             return "Too few genes have partners that are joined to say how clustering depends on the degree."
-        interval = f"slope {self.slope:.2f}, 95 % from {self.slope_low:.2f} to {self.slope_high:.2f}"
+        slope, low, high = (_signed(each) for each in (self.slope, self.slope_low, self.slope_high))
+        interval = f"slope {slope}, 95 % from {low} to {high}"
         if self.slope_high >= 0:
             how = "rises" if self.slope_low > 0 else "does not clearly change"
             return f"Clustering {how} with the degree ({interval}): no sign of a hierarchy of modules."
@@ -69,7 +70,7 @@ class Hierarchy:
         null = self._null_slope()
         if np.isnan(null):
             return f"{told}."
-        return f"{told}; the degrees alone give {null:.2f}."
+        return f"{told}; the degrees alone give {_signed(null)}."
 
     def _null_slope(self) -> float:
         return _slope(self.bin_degree, self.bin_null)
@@ -126,6 +127,10 @@ def _binned(degrees: NDArray[Any], genes: NDArray[Any], values: FloatArray) -> t
     kept = held > 0
     middle = np.bincount(place, genes * degrees, len(borders))[kept] / held[kept]
     return middle, np.bincount(place, genes * values, len(borders))[kept] / held[kept]
+
+
+def _signed(value: float) -> str:
+    return f"{value:.2f}".replace("-", "−")
 
 
 def _slope(degree: FloatArray, values: FloatArray) -> float:

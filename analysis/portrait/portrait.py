@@ -44,7 +44,7 @@ PURPOSE = 11
 SEARCH_PARTS = 4
 SAMPLES_A_TASK = 10
 PHRASE = "portrait of the network"
-QUICK = (OwnFiguresTask, DegreeTask, HubTask, SearchTask)
+QUICK = (OwnFiguresTask, DegreeTask, HubTask, SearchTask, RemovalTask)
 
 
 @dataclass(frozen=True)
