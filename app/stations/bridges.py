@@ -132,7 +132,7 @@ def _removal_parts() -> list[Any]:
     return [
         heading("What if it were gone?"),
         field("take out", control, "separate several genes by commas; Enter takes them out"),
-        html.Div(id="removal-area"),
+        html.Div(id="taken-out-area"),
     ]
 
 

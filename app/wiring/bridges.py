@@ -39,7 +39,7 @@ def wire(app: Dash, desk: Desk) -> None:
         return {"network": fingerprint, "nodes": nodes}, ""
 
     @app.callback(
-        Output("removal-area", "children"),
+        Output("taken-out-area", "children"),
         Input("taken-out", "data"),
         State("shown", "data"),
     )
