@@ -61,7 +61,8 @@ def render(view: View) -> Pane:
         *_settings(view),
         *_trail(view),
     ]
-    return Pane(TITLE, body, [button("Hand over genes", {"type": "go-on", "station": "handover"}, kind="button primary")])
+    hand_over = button("Hand over genes", {"type": "go-on", "station": "handover"}, kind="button primary")
+    return Pane(TITLE, body, [hand_over])
 
 
 def table_of(view: View, kind: str | None) -> Any:

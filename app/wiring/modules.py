@@ -11,6 +11,7 @@ from analysis.evidence import HARVEST
 from analysis.study import StudySettings
 from app.desk import Desk
 from app.wiring.triggers import pressed
+from app.workspace import TrailEntry
 
 HARVEST_NULLS = 3
 
@@ -107,7 +108,7 @@ def wire(app: Dash, desk: Desk) -> None:
         entry = desk.workspace.clustering(ctx.triggered_id["study"])
         if entry is None:
             return no_update
-        return {**wanted, **{key: entry.settings[key] for key in wanted if key in entry.settings}}
+        return as_wanted(entry, wanted)
 
     @app.callback(
         Output("names-version", "data"),
@@ -129,6 +130,11 @@ def wire(app: Dash, desk: Desk) -> None:
         module = f"M{int(pick['index']) + 1}"
         desk.workspace.set_name(study.network.fingerprint, shown["study"], module, (name or "").strip())
         return version + 1
+
+
+def as_wanted(entry: TrailEntry, wanted: dict[str, Any]) -> dict[str, Any]:
+    """Return what a window asks for once it asks for a clustering of the trail."""
+    return {**wanted, **{key: entry.settings[key] for key in wanted if key in entry.settings}}
 
 
 def settings_of(wanted: dict[str, Any]) -> StudySettings:

@@ -57,6 +57,7 @@ def wire(app: Dash, desk: Desk) -> None:
         Input("map-order", "data"),
         Input("trust-seen", "data"),
         Input("meaning-seen", "data"),
+        Input("save-order", "data"),
         State("wanted", "data"),
         State("pending", "data"),
     )
@@ -70,6 +71,7 @@ def wire(app: Dash, desk: Desk) -> None:
         _map: Any,
         _trust: Any,
         _meaning: Any,
+        _saved: Any,
         wanted: Any,
         pending: Any,
     ) -> Any:

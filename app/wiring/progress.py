@@ -10,6 +10,7 @@ from dash import ALL, Dash, Input, Output, State, ctx, html, no_update
 from app.desk import Desk
 from app.job_states import JobState
 from app.parts import button
+from app.wiring.modules import as_wanted
 from app.wiring.triggers import pressed
 
 SHOW_AFTER_SECONDS = 0.5
@@ -56,14 +57,23 @@ def wire(app: Dash, desk: Desk) -> None:
         )
 
     @app.callback(
-        Output("done-here", "data"),
+        Output("wanted", "data", allow_duplicate=True),
         Input({"type": "stop-job", "job": ALL}, "n_clicks"),
+        State("pending", "data"),
+        State("shown", "data"),
+        State("wanted", "data"),
         prevent_initial_call=True,
     )
-    def stop(_clicks: Any) -> Any:
-        if pressed("stop-job"):
-            desk.jobs.stop(ctx.triggered_id["job"])
-        return no_update
+    def stop(_clicks: Any, pending: Any, shown: Any, wanted: Any) -> Any:
+        """Stop a job; where it was to give another clustering, ask for the one that is shown again."""
+        if not pressed("stop-job"):
+            return no_update
+        job = ctx.triggered_id["job"]
+        desk.jobs.stop(job)
+        if not pending or pending.get("job") != job or not shown or shown["network"] != pending["network"]:
+            return no_update
+        entry = desk.workspace.clustering(shown["study"])
+        return no_update if entry is None else as_wanted(entry, wanted)
 
     @app.callback(
         Output("save-asked", "data"),

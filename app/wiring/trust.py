@@ -62,14 +62,16 @@ def wire(app: Dash, desk: Desk) -> None:
         State("shown", "data"),
         State("trust-seen", "data"),
         State("pending", "data"),
+        State("wanted", "data"),
         prevent_initial_call=True,
     )
-    def watch(_ticks: Any, station: str, shown: Any, seen: Any, pending: Any) -> Any:
+    def watch(_ticks: Any, station: str, shown: Any, seen: Any, pending: Any, wanted: Any) -> Any:
         if not shown or station != trust.KEY:
             return no_update
         curve, draws = desk.curve(shown["study"]), desk.draws(pending["study"] if pending else None)
         points = 0 if curve is None else int(np.isfinite(curve.vi).sum() + np.isfinite(curve.null_vi).sum())
-        now = [shown["study"], points, 0 if draws is None else len(draws.draws) // DRAWS_AT_A_TIME]
+        drawn = 0 if draws is None else len(draws.draws) // DRAWS_AT_A_TIME
+        now = [shown["study"], points, drawn, bool(wanted and wanted["nulls"])]
         return no_update if now == seen else now
 
 

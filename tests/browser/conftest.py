@@ -10,6 +10,7 @@ from typing import TYPE_CHECKING
 import pytest
 from playwright.sync_api import expect
 
+from tests.browser.networks import write_les_miserables
 from tests.browser.screen import PATIENCE, Screen
 from tests.dashboard import served
 
@@ -68,3 +69,17 @@ def opened(browser: Browser) -> Iterator[Callable[..., Screen]]:
 def screen(opened: Callable[..., Screen], address: str) -> Screen:
     """Open a window of a laptop's size on this file's dashboard."""
     return opened(address)
+
+
+@pytest.fixture(scope="module")
+def small_address(tmp_path_factory: pytest.TempPathFactory) -> Iterator[str]:
+    """Serve les misérables, read from a file, for the tests of this file."""
+    folder = tmp_path_factory.mktemp("small")
+    with served(folder / "workspace", str(write_les_miserables(folder))) as url:
+        yield url
+
+
+@pytest.fixture
+def small(opened: Callable[..., Screen], small_address: str) -> Screen:
+    """Open a window on les misérables."""
+    return opened(small_address)

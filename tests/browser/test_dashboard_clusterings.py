@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import re
 from collections import Counter
-from collections.abc import Callable, Iterator
 
 import networkx as nx
 import numpy as np
@@ -12,9 +11,7 @@ import pytest
 from numpy.typing import NDArray
 from playwright.sync_api import expect
 
-from tests.browser.networks import write_les_miserables
 from tests.browser.screen import Screen
-from tests.dashboard import served
 
 NO_MODULE = 65535
 STAYS = 0.9  # overlap of a module before and after, as a Jaccard index
@@ -30,18 +27,6 @@ def wide(screen: Screen) -> Screen:
             first.click()
     screen.fill_ruler()
     return screen
-
-
-@pytest.fixture(scope="module")
-def small_address(tmp_path_factory: pytest.TempPathFactory) -> Iterator[str]:
-    folder = tmp_path_factory.mktemp("small")
-    with served(folder / "workspace", str(write_les_miserables(folder))) as url:
-        yield url
-
-
-@pytest.fixture
-def small(opened: Callable[..., Screen], small_address: str) -> Screen:
-    return opened(small_address)
 
 
 def kept_modules(before: NDArray[np.uint16], after: NDArray[np.uint16]) -> list[NDArray[np.int64]]:
