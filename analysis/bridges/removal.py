@@ -14,7 +14,7 @@ from analysis.modules import Modules
 from analysis.network import FloatArray, IntArray, Network, locked
 
 GROUPS = 24
-EXACT_NODES = 1_000
+EXACT_NODES = 2_000
 SOURCES, RANKING_SOURCES, CANDIDATE_SOURCES = 128, 64, 32
 AT_A_TIME = 64
 ROUNDING = 1e-12
@@ -85,7 +85,7 @@ class Removal:
         """Say it in words."""
         count = len(self.removed)
         who = network.names[self.removed[0]] if count == 1 else f"these {count} genes"
-        return f"Without {who} {self._giant_words()}, {self._split_words()}, and {self._path_words()}."
+        return f"Without {who}, {self._giant_words()}, {self._split_words()}, and {self._path_words()}."
 
     def _giant_words(self) -> str:
         lost = self.giant_before - self.giant_after

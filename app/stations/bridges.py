@@ -10,7 +10,7 @@ from dash import dcc, html
 
 from analysis.bridges import ROLES, assign_roles
 from analysis.bridges.module_links import bridge_genes, link_modules
-from analysis.bridges.removal import Removal, remove_genes
+from analysis.bridges.removal import EXACT_NODES, RANKING_SOURCES, Removal, remove_genes
 from analysis.bridges.spreading import share_inside, walk_from
 from analysis.modules import Modules
 from analysis.network import Network
@@ -29,6 +29,7 @@ JOINING = (2, 3, 5, 6)
 """Positions in `ROLES` of those whose edges are spread over modules."""
 RANKED_SHOWN, SHARED_SHOWN, LINKS_SHOWN, PAIRS_SHOWN = 40, 60, 40, 12
 SECOND_HOME = 0.4
+ALL_LINKS, STRONG_LINKS = "all links", "beyond chance"
 PERCOLATION = "clique-percolation"
 
 
@@ -45,12 +46,12 @@ def render(view: View) -> Pane:
     roles = assign_roles(study.network, study.modules)
     counts = np.bincount(roles.role, minlength=len(ROLES))
     body: list[Any] = [
-        sentence(_verdict(study, counts), first=True),
+        sentence(_verdict(study), first=True),
         notice(DEGREE_CAUTION),
         *_removal_parts(),
         *_ranking(view, study),
-        *_roles(counts, role_plane(roles)),
-        *_links(view, study),
+        *_roles(study, counts, role_plane(roles)),
+        *_links(),
         *_overlap(study),
         *_every_k(view),
     ]
@@ -105,8 +106,8 @@ def second_home_pane(study: Study, threshold: float | None) -> list[Any]:
     return [sentence(words), *_second_homes(study, above)]
 
 
-def _verdict(study: Study, counts: Any) -> str:
-    joining = int(sum(counts[role] for role in JOINING))
+def _verdict(study: Study) -> str:
+    joining = len({node for role in JOINING for node in role_nodes(study, role)})
     shared = int((study.modules.homes > 1).sum())
     who = {0: "No gene joins modules", 1: "One gene joins modules"}.get(joining, f"{joining:,} genes join modules")
     text = f"{who} by the spread of its edges." if joining <= 1 else f"{who} by the spread of their edges."
@@ -204,28 +205,46 @@ def _ranking(view: View, study: Study) -> list[Any]:
     ]
     words = (
         f"{len(found.nodes)} genes were taken out one by one: half of them by betweenness, half by edges into other "
-        "modules. Efficiency is the mean of 1 / path length between genes of different modules."
+        "modules. Efficiency is the mean of 1 / path length between genes of different modules"
+        f"{'' if study.network.node_count <= EXACT_NODES else f', here from {RANKING_SOURCES} genes drawn at random'}."
     )
     head = ["gene", "module", "efficiency lost", "leave giant", "modules split", ""]
     return [heading("Ranking"), sentence(words), table(head, rows, numeric=[2, 3, 4], name="Ranking of removals")]
 
 
-def _roles(counts: Any, plane: str) -> list[Any]:
+def _roles(study: Study, counts: Any, plane: str) -> list[Any]:
     rows = [[link(name, {"type": "list-role", "index": role}), f"{counts[role]:,}"] for role, name in enumerate(ROLES)]
+    unit = "genes, counted in each community" if study.modules.is_cover else "genes"
     words = (
         "Every gene by participation (how evenly its edges are spread over modules) and within-module degree z; lines "
         "are the limits of the seven roles (Guimerà & Amaral 2005). Green: roles that join modules."
     )
-    return [heading("Roles"), figure(plane, words), table(["role", "genes"], rows, numeric=[1], name="Roles")]
+    return [heading("Roles"), figure(plane, words), table(["role", unit], rows, numeric=[1], name="Roles")]
 
 
-def _links(view: View, study: Study) -> list[Any]:
+def _links() -> list[Any]:
+    choice = dcc.RadioItems(
+        [ALL_LINKS, STRONG_LINKS],
+        ALL_LINKS,
+        id="link-kind",
+        className="segments",
+        persistence=True,
+        persistence_type="session",
+    )
+    return [heading("Map of modules"), choice, html.Div(id="module-map-area")]
+
+
+def link_pane(view: View, shown: str | None) -> list[Any]:
+    """Return the map of modules and the table of links beyond chance."""
+    study = view.study
+    if study is None:
+        return []
     links = link_modules(study.network, study.modules)
     if not len(links.first):
-        return []
+        return [sentence("No edge joins two modules.")]
     words = (
-        "The largest modules, areas by size; lines are links with more edges than the degrees alone would give "
-        "(configuration model). Links weaker than chance are left out here and stand in the table's count."
+        "The largest modules, areas by size. Green lines are links with more edges than the degrees alone would give "
+        "(configuration model), grey lines links with no more than that."
     )
     strong = np.flatnonzero(links.beyond_chance())
     rows = []
@@ -243,8 +262,8 @@ def _links(view: View, study: Study) -> list[Any]:
             ]
         )
     weaker = len(links.first) - len(strong)
-    drawing = figure(module_map(study.modules.sizes.tolist(), links, view.hues()), words)
-    parts: list[Any] = [heading("Map of modules"), drawing]
+    drawing = module_map(study.modules.sizes.tolist(), links, view.hues(), all_links=shown == ALL_LINKS)
+    parts: list[Any] = [figure(drawing, words)]
     if rows:
         head = ["from", "to", "edges", "expected", "z", "most edges across"]
         parts.append(table(head, rows, numeric=[2, 3, 4], name="Links between modules"))

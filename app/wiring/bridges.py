@@ -10,6 +10,7 @@ from dash import ALL, ClientsideFunction, Dash, Input, Output, State, ctx, no_up
 from app.bridging import every_k, ranking, refusal, start_every_k, start_ranking
 from app.desk import Desk
 from app.stations import bridges
+from app.view import View
 from app.wiring.triggers import pressed
 
 
@@ -24,15 +25,16 @@ def wire(app: Dash, desk: Desk) -> None:
         Input("take-out-text", "n_submit"),
         State("take-out-text", "value"),
         State("at-hand", "data"),
+        State("taken-out", "data"),
         prevent_initial_call=True,
     )
-    def take_out(_clicks: Any, _back: Any, submitted: Any, text: str | None, fingerprint: str | None) -> Any:
+    def take_out(_clicks: Any, _back: Any, submitted: Any, text: str | None, fingerprint: str | None, now: Any) -> Any:
         if pressed("put-back"):
             return None, ""
         if pressed("take-out"):
             return {"network": fingerprint, "nodes": [int(ctx.triggered_id["node"])]}, ""
         if ctx.triggered_id != "take-out-text" or not submitted or not text or not fingerprint:
-            return no_update, no_update
+            return now, no_update  # the pane was drawn anew: what is taken out is told again
         nodes, missing = _named(desk, fingerprint, text)
         if missing:
             return no_update, f"not in this network: {', '.join(missing[:10])}; give names as they stand in the map"
@@ -46,6 +48,16 @@ def wire(app: Dash, desk: Desk) -> None:
     def tell_removal(taken: Any, shown: Any) -> Any:
         study = desk.study(shown["study"]) if shown else None
         return [] if study is None else bridges.removal_pane(study, _taken(taken, shown))
+
+    @app.callback(
+        Output("module-map-area", "children"),
+        Input("link-kind", "value"),
+        State("at-hand", "data"),
+        State("shown", "data"),
+    )
+    def draw_links(kind: str | None, fingerprint: str | None, shown: Any) -> Any:
+        study_id = shown["study"] if shown else None
+        return bridges.link_pane(View(desk, fingerprint, {}, desk.study(study_id), study_id), kind)
 
     @app.callback(
         Output("second-home-area", "children"),
@@ -124,14 +136,13 @@ def wire(app: Dash, desk: Desk) -> None:
     # What has come fills the pane anew, as a point of Trust's curve does.
     @app.callback(
         Output("trust-seen", "data", allow_duplicate=True),
-        Input("tick", "n_intervals"),
-        Input("tick", "disabled"),
+        Input("progress-area", "children"),
         State("station", "data"),
         State("shown", "data"),
         State("trust-seen", "data"),
         prevent_initial_call=True,
     )
-    def watch(_ticks: Any, _ended: Any, station: str, shown: Any, seen: Any) -> Any:
+    def watch(_bars: Any, station: str, shown: Any, seen: Any) -> Any:
         if station != bridges.KEY or not shown:
             return no_update
         known = every_k(desk, shown["network"]) is not None or bool(refusal(desk, shown["network"]))

@@ -66,7 +66,7 @@ def test_a_bridge_by_hand():
     assert found.before.lengths[0, 1] == pytest.approx((2 + 4 * 3 + 4 * 4) / 9)
     assert (found.before.pairs[0, 1], found.after.pairs[0, 1]) == (9, 0)
     assert found.sentence(network) == (
-        "Without x 3 other genes leave the giant component, no module falls apart, and paths between modules lose "
+        "Without x, 3 other genes leave the giant component, no module falls apart, and paths between modules lose "
         "100 % of their efficiency."
     )
 
@@ -105,11 +105,11 @@ def test_the_bridge_comes_first():
 
 
 def test_a_large_network_is_sampled():
-    network = random_network(2, nodes=1_200, edges=3_000)
-    modules = Modules.from_labels(random_labels(2, 1_200, 40))
+    network = random_network(2, nodes=2_100, edges=5_000)
+    modules = Modules.from_labels(random_labels(2, 2_100, 40))
     found = remove_genes(network, modules, [int(network.degree.argmax())])
     assert not found.exact
-    assert found.sources < 1_200
+    assert found.sources < 2_100
     assert found.before.pairs.shape == (25, 25)
     assert found.efficiency_lost == remove_genes(network, modules, [int(network.degree.argmax())]).efficiency_lost
 
