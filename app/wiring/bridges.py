@@ -7,6 +7,7 @@ from typing import Any
 
 from dash import ALL, ClientsideFunction, Dash, Input, Output, State, ctx, no_update
 
+from app.bridge_panes import link_pane, removal_pane, second_home_pane
 from app.bridging import every_k, ranking, refusal, start_every_k, start_ranking
 from app.desk import Desk
 from app.stations import bridges
@@ -47,7 +48,7 @@ def wire(app: Dash, desk: Desk) -> None:
     )
     def tell_removal(taken: Any, shown: Any) -> Any:
         study = desk.study(shown["study"]) if shown else None
-        return [] if study is None else bridges.removal_pane(study, _taken(taken, shown))
+        return [] if study is None else removal_pane(study, _taken(taken, shown))
 
     @app.callback(
         Output("module-map-area", "children"),
@@ -57,7 +58,7 @@ def wire(app: Dash, desk: Desk) -> None:
     )
     def draw_links(kind: str | None, fingerprint: str | None, shown: Any) -> Any:
         study_id = shown["study"] if shown else None
-        return bridges.link_pane(View(desk, fingerprint, {}, desk.study(study_id), study_id), kind)
+        return link_pane(View(desk, fingerprint, {}, desk.study(study_id), study_id), kind)
 
     @app.callback(
         Output("second-home-area", "children"),
@@ -66,7 +67,7 @@ def wire(app: Dash, desk: Desk) -> None:
     )
     def tell_second_homes(threshold: Any, shown: Any) -> Any:
         study = desk.study(shown["study"]) if shown else None
-        return [] if study is None else bridges.second_home_pane(study, threshold)
+        return [] if study is None else second_home_pane(study, threshold)
 
     @app.callback(
         Output("map-mask", "data"),
