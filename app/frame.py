@@ -127,7 +127,7 @@ def _map_area() -> html.Main:
         maxZoom=6,
         wheelSensitivity=None,
     )
-    legend = html.Div(
+    legend = html.Label(
         [
             html.Span("colour: module · size: degree · grey: modules under ", id="legend-text"),
             dcc.Input(

@@ -52,6 +52,7 @@ def create_app(desk: Desk, *, port: int | None = None) -> Dash:
         compress=False,
         on_error=_tell_fault,
     )
+    app.index_string = app.index_string.replace("<html>", '<html lang="en-GB">')
     app.layout = layout(app.get_asset_url("corymb.svg"))
     install_routes(server, desk)
     wire(app, desk)
