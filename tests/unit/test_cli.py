@@ -11,6 +11,7 @@ import signal
 import subprocess
 import sys
 import time
+from functools import partial
 from pathlib import Path
 
 import networkx as nx
@@ -457,10 +458,15 @@ def test_a_folder_of_somebody_else_is_refused_before_the_work(tmp_path, capsys):
 
 def test_interrupted_it_writes_nothing_and_ends_with_130(tmp_path):
     command = [sys.executable, "-m", "app.cli", "modules", str(SAMPLE), "-o", str(tmp_path / "out"), "--runs", "100000"]
-    with subprocess.Popen(command, cwd=REPOSITORY, stderr=subprocess.PIPE, text=True) as run:
-        time.sleep(3)
-        run.send_signal(signal.SIGINT)
-        _, told = run.communicate(timeout=30)
+    # a test run begun in the background may have been told to ignore interrupts, which its children inherit
+    heed = partial(signal.signal, signal.SIGINT, signal.default_int_handler)
+    with subprocess.Popen(command, cwd=REPOSITORY, stderr=subprocess.PIPE, text=True, preexec_fn=heed) as run:  # noqa: PLW1509
+        try:
+            time.sleep(3)
+            run.send_signal(signal.SIGINT)
+            _, told = run.communicate(timeout=60)
+        finally:
+            run.kill()
     assert run.returncode == 130
     assert "stopped; nothing was written" in told
     assert "Traceback" not in told
