@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable, Sequence
 
 import numpy as np
@@ -13,6 +14,7 @@ from analysis.trust.noise_curve import NoiseCurve
 Scale = Callable[[float], float]
 WIDTH, HEIGHT = 440.0, 210.0
 LEFT, RIGHT, TOP, BOTTOM = 44.0, 100.0, 14.0, 34.0
+LINE_HEIGHT = 14.0
 LEAF, GREY, INK, LINE = "#2d6a4f", "#7d8a88", "#1d2a2f", "#dcdcd2"
 
 
@@ -28,6 +30,7 @@ def noise_figure(curve: NoiseCurve) -> str:
         return HEIGHT - BOTTOM - (HEIGHT - TOP - BOTTOM) * value / top
 
     parts: list[Markup] = [_axes(x, y, top, curve.shares)]
+    ends: list[tuple[float, float, str, str]] = []
     for table, colour, words in ((curve.null_vi, GREY, "random networks"), (curve.vi, LEAF, "this network")):
         known = ~np.isnan(table).all(axis=1)
         if not known.any():
@@ -42,8 +45,19 @@ def noise_figure(curve: NoiseCurve) -> str:
         line = [(x(s), y(v)) for s, v in zip(shares, middle, strict=True)]
         parts.append(tag("polygon", points=_points(outline), fill=colour, fill_opacity=0.15))
         parts.append(tag("polyline", points=_points(line), fill="none", stroke=colour, stroke_width=2.2))
-        parts.append(_text(words, line[-1][0] + 6, line[-1][1] + 4, "start", colour))
+        ends.append((line[-1][1], line[-1][0], words, colour))
+    parts += _names_of_lines(ends)
     return tag("svg", parts, viewBox=f"0 0 {WIDTH:.0f} {HEIGHT:.0f}", role="img")
+
+
+def _names_of_lines(ends: list[tuple[float, float, str, str]]) -> list[Markup]:
+    """Name each line at its end (down, across, words, colour); ends that are near push their names apart."""
+    taken = -math.inf
+    names = []
+    for down, across, words, colour in sorted(ends):
+        taken = max(down, taken + LINE_HEIGHT)
+        names.append(_text(words, across + 6, taken + 4, "start", colour))
+    return names
 
 
 def _axes(x: Scale, y: Scale, top: float, shares: FloatArray) -> Markup:

@@ -11,6 +11,7 @@ import numpy as np
 from analysis.meaning import Meaning, enrichment_table, title_of
 from analysis.study import Study
 
+ROW_HEIGHT, HEADER_HEIGHT, SCROLL_BAR, HIGHEST = 30, 34, 20, 300
 THEME = (
     "themeQuartz.withParams({fontFamily: 'inherit', fontSize: 13, accentColor: 'var(--leaf)', "
     "backgroundColor: 'var(--panel)', foregroundColor: 'var(--ink)', headerBackgroundColor: 'var(--panel)', "
@@ -84,6 +85,11 @@ def enrichment_grid(meaning: Meaning) -> Any:
     return _grid("enrichment-grid", columns, rows, "params.data.id")
 
 
+def height(rows: int) -> int:
+    """Return how high a table of so many rows is drawn, in pixels: a few need no empty room below them."""
+    return min(HIGHEST, HEADER_HEIGHT + ROW_HEIGHT * max(rows, 1) + SCROLL_BAR)
+
+
 def _grid(grid_id: str, columns: list[dict[str, Any]], rows: list[dict[Hashable, Any]], row_id: str) -> Any:
     return dag.AgGrid(
         id=grid_id,
@@ -92,8 +98,8 @@ def _grid(grid_id: str, columns: list[dict[str, Any]], rows: list[dict[Hashable,
         getRowId=row_id,
         defaultColDef={"sortable": True, "resizable": True, "filter": "agNumberColumnFilter", "suppressMovable": True},
         dashGridOptions={
-            "rowHeight": 30,
-            "headerHeight": 34,
+            "rowHeight": ROW_HEIGHT,
+            "headerHeight": HEADER_HEIGHT,
             "suppressCellFocus": False,
             "animateRows": False,
             "rowSelection": {"mode": "singleRow", "checkboxes": False, "enableClickSelection": True},
@@ -106,7 +112,7 @@ def _grid(grid_id: str, columns: list[dict[str, Any]], rows: list[dict[Hashable,
         persistence=True,
         persistence_type="session",
         persisted_props=["filterModel", "columnState"],
-        style={"height": "300px", "width": "100%"},
+        style={"height": f"{height(len(rows))}px", "width": "100%"},
     )
 
 

@@ -22,7 +22,7 @@ SMALL = 1e-4
 
 def sentence(text: str, *, first: bool = False) -> html.P:
     """Return a sentence; the first one is the verdict, set larger."""
-    unbroken = text.replace(" %", "\u00a0%")
+    unbroken = text.replace(" %", "\u00a0%").replace("p = ", "p\u00a0=\u00a0")
     return html.P(unbroken, className="verdict" if first else "hint sentence")
 
 

@@ -14,7 +14,7 @@ from analysis.modules import expected_density
 from analysis.network import Network
 from analysis.study import Study
 from analysis.trust.ensemble import standing
-from analysis.verdicts import DEGREE_CAUTION, STRUCTURE_CAUTION, is_firm, module_sentence
+from analysis.verdicts import DEGREE_CAUTION, STRUCTURE_CAUTION, module_sentence
 from app.parts import NOTHING, bar, button, heading, link, notice, number, sentence, swatch, table
 from app.view import Pane, View
 
@@ -76,11 +76,10 @@ def gene_passport(view: View, node: int) -> Pane:
 def _module_evidence(study: Study, module: int) -> html.Table:
     row = study.module_table.iloc[module]
     expected = expected_density(study.network, study.modules.members[module])
-    firm = is_firm(study, module)
     lines: list[list[Any]] = [
         ["genes", "", f"{row['size']:,}", ""],
         ["interactions inside / leaving", "", f"{row['internal_edges']:,} / {row['cut_edges']:,}", ""],
-        *_returned(study, module, firm=firm),
+        *_returned(study, module),
         ["stability over all resolutions", bar(float(row["stability"])), number(float(row["stability"])), ""],
         [
             "inside density",
@@ -99,12 +98,17 @@ def _module_evidence(study: Study, module: int) -> html.Table:
     return table(["evidence", "", "here", "from degrees"], lines, numeric=[2, 3], name="Evidence for the module")
 
 
-def _returned(study: Study, module: int, *, firm: bool) -> list[list[Any]]:
+def _returned(study: Study, module: int) -> list[list[Any]]:
     if study.returned is None:
         return []
     share = float(study.returned[module]) / study.copies
     return [
-        ["comes back in noisy copies", bar(share, doubt=not firm), f"{study.returned[module]} of {study.copies}", ""]
+        [
+            "comes back in noisy copies",
+            bar(share, doubt=share < DOUBT),
+            f"{study.returned[module]} of {study.copies}",
+            "",
+        ]
     ]
 
 

@@ -7,6 +7,7 @@
     "#3d7a2b", "#a0522d", "#1f9e9a", "#c2478b", "#7a6ff0", "#8c6d1f",
   ];
   const none = 0xffff;
+  const NATURAL = 1.5; // the close-up of a few genes is not blown up further
   const state = {
     network: null, // address of the network on the map
     loaded: Promise.resolve(),
@@ -242,6 +243,10 @@
         dress(cy);
         cy.resize();
         cy.fit(undefined, 40);
+        if (cy.zoom() > NATURAL) {
+          cy.zoom(NATURAL);
+          cy.center();
+        }
       }, 60);
       return noUpdate();
     },

@@ -54,7 +54,8 @@
     measure() {
       this.width = Math.max(1, this.host.clientWidth);
       this.height = Math.max(1, this.host.clientHeight);
-      if (this.scene.network) this.base = parts.view.fit(this.scene.network.bounds, this.width, this.height);
+      const { network } = this.scene;
+      if (network) this.base = parts.view.fit(network.bounds, this.width, this.height, network.n);
     }
 
     viewNow(ratio = parts.view.ratio()) {

@@ -5,13 +5,15 @@
   const parts = (corymb.mapParts = corymb.mapParts || {});
 
   const SIDE = 36;
+  const SIDE_OF_FEW = 92;        // in a small network every disc has its name beside it
+  const FEW = 60;
   const TOP = 30;
   const BOTTOM = 52;             // the switch and the legend lie there
   const MOST_PIXELS_PER_POINT = 2;
 
-  /** How the whole network fits into a box of this size: screen = plane * scale + (left, top). */
-  function fit(bounds, width, height) {
-    const side = Math.min(SIDE, width / 8);
+  /** How the whole network of n genes fits into a box of this size: screen = plane * scale + (left, top). */
+  function fit(bounds, width, height, n) {
+    const side = Math.min(n <= FEW ? SIDE_OF_FEW : SIDE, width / 8);
     const top = Math.min(TOP, height / 8);
     const bottom = Math.min(BOTTOM, height / 8);
     const scale = Math.min((width - 2 * side) / bounds.width, (height - top - bottom) / bounds.height);

@@ -15,7 +15,13 @@ NODES_SHOWN = 400
 NEIGHBOURS_SHOWN = 120
 EDGES_SHOWN = 2500
 SPREAD = 30.0
+SMALLEST_REACH = 290.0
+"""So wide is even the close-up of a few genes: names are written at their natural size."""
 RING = 52.0
+NAMED = 24
+"""So many of the best connected genes keep a name that can be read, where there are more than can be named."""
+THIN_FROM = 200
+"""Where there are more edges than this they are drawn thinner, so that the whole stays as light."""
 
 # The light theme's colours; `assets/glue.js` puts those of the theme at hand over them.
 STYLESHEET: list[dict[str, Any]] = [
@@ -36,9 +42,10 @@ STYLESHEET: list[dict[str, Any]] = [
             "text-margin-y": 2,
             "border-width": 1.5,
             "border-color": "#fbfaf6",
-            "min-zoomed-font-size": 7,
+            "min-zoomed-font-size": 9,
         },
     },
+    {"selector": "node.named", "style": {"font-size": 15}},
     {"selector": "node.outside", "style": {"background-blacken": -0.5, "color": "#5a6a70"}},
     {"selector": "node.centre", "style": {"border-width": 3, "border-color": "#1d2a2f", "font-weight": "bold"}},
     {"selector": "edge", "style": {"width": "data(width)", "line-color": "#9aa5a3", "opacity": 0.55}},
@@ -98,14 +105,21 @@ def _elements(
     else:
         place = _around(positions[chosen], labels[chosen], int(np.flatnonzero(chosen == centre)[0]))
     nodes = []
+    named = _best_connected(network, inside) if len(chosen) > 2 * NAMED else set()
     for node, (x, y) in zip(chosen.tolist(), place.tolist(), strict=True):
         label = int(labels[node])
         colour = PALETTE[int(hues[label])] if label >= 0 and modules.sizes[label] >= 3 else GREY
         classes = "centre" if node == centre else "" if node in inside else "outside"
+        classes += " named" if node in named else ""
         size = 10 + 2.2 * float(np.sqrt(network.degree[node]))
         data = {"id": str(node), "label": network.names[node], "colour": colour, "size": size}
         nodes.append({"data": data, "position": {"x": x, "y": y}, "classes": classes})
     return nodes + _edges(network, chosen, inside)
+
+
+def _best_connected(network: Network, inside: set[int]) -> set[int]:
+    genes = np.array(sorted(inside))
+    return set(genes[np.argsort(-network.degree[genes], kind="stable")[:NAMED]].tolist())
 
 
 def _drawn_in(points: FloatArray, inside: NDArray[np.bool_]) -> FloatArray:
@@ -117,7 +131,7 @@ def _drawn_in(points: FloatArray, inside: NDArray[np.bool_]) -> FloatArray:
     distance = np.hypot(*offset.T)
     wanted = np.where(distance > reach, reach * (1.1 + 0.35 * np.log(np.maximum(distance, reach) / reach)), distance)
     drawn = offset * (wanted / np.maximum(distance, 1e-9))[:, None]
-    wide = SPREAD * np.sqrt(len(points)) / max(float(wanted.max()), 1e-9)
+    wide = max(SPREAD * np.sqrt(len(points)), SMALLEST_REACH) / max(float(wanted.max()), 1e-9)
     scaled: FloatArray = drawn * wide
     return scaled
 
@@ -146,10 +160,11 @@ def _edges(network: Network, chosen: NDArray[Any], inside: set[int]) -> list[dic
     weights = network.edge_weights
     kept = np.sort(kept[np.argsort(-weights[kept], kind="stable")[:EDGES_SHOWN]])
     top = float(weights[kept].max(initial=1.0)) or 1.0
+    thin = min(1.0, float(np.sqrt(THIN_FROM / max(len(kept), 1))))
     edges = []
     for edge in kept.tolist():
         source, target = int(network.sources[edge]), int(network.targets[edge])
-        width = 0.6 + 2.0 * float(weights[edge]) / top if network.weights is not None else 1.2
+        width = thin * (0.6 + 2.0 * float(weights[edge]) / top if network.weights is not None else 1.2)
         data = {"id": f"e{edge}", "source": str(source), "target": str(target), "width": width}
         data["weight"] = float(weights[edge])
         edges.append({"data": data, "classes": "inside" if source in inside and target in inside else ""})

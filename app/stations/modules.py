@@ -10,7 +10,7 @@ from dash import dcc, html
 from analysis.evidence import HARVEST
 from analysis.study import Study
 from analysis.verdicts import STRUCTURE_CAUTION
-from app.grids import gene_grid, module_grid
+from app.grids import gene_grid, height, module_grid
 from app.parts import button, field, heading, link, notice, number, sentence, sentences, table
 from app.ruler import QUESTIONS
 from app.view import Pane, View
@@ -57,7 +57,8 @@ def render(view: View) -> Pane:
             persistence=True,
             persistence_type="session",
         ),
-        html.Div(id="table-area"),  # filled by a callback, so that only the table that is seen is made
+        # filled by a callback, so that only the table that is seen is made; its room is kept, so that nothing jumps
+        html.Div(id="table-area", style={"minHeight": f"{height(len(study.modules))}px"}),
         *_settings(view),
         *_trail(view),
     ]
