@@ -4,17 +4,14 @@ from __future__ import annotations
 
 import time
 from collections.abc import Iterator
-from pathlib import Path
 from typing import Any
 
 import pytest
 from map_page import serve
-from playwright.sync_api import Browser, Page, sync_playwright
+from playwright.sync_api import Browser, Page
 
 pytestmark = pytest.mark.browser
 
-CHROMIUM = ("/usr/bin/chromium", "/usr/bin/chromium-browser", "/usr/bin/google-chrome")
-FLAGS = ["--no-sandbox", "--disable-gpu", "--disable-background-networking"]
 READY = "Boolean(window.tried && tried.ready && !corymb.map.stats().waiting)"
 
 # The colour of one pixel of a layer, as [red, green, blue, alpha]
@@ -58,16 +55,6 @@ def address(tmp_path_factory: pytest.TempPathFactory) -> Iterator[str]:
     serve.make_data(data, ["906", "50"])
     with serve.served(data) as url:
         yield url
-
-
-@pytest.fixture(scope="module")
-def browser() -> Iterator[Browser]:
-    """Start the Chromium of this machine, or else the one that playwright brings."""
-    found = next((path for path in CHROMIUM if Path(path).exists()), None)
-    with sync_playwright() as playwright:
-        chromium = playwright.chromium.launch(executable_path=found, args=FLAGS)
-        yield chromium
-        chromium.close()
 
 
 @pytest.fixture
