@@ -58,14 +58,14 @@ def wire(app: Dash, desk: Desk) -> None:
     @app.callback(
         Output("trust-seen", "data"),
         Input("tick", "n_intervals"),
+        Input("wanted", "data"),
         State("station", "data"),
         State("shown", "data"),
         State("trust-seen", "data"),
         State("pending", "data"),
-        State("wanted", "data"),
         prevent_initial_call=True,
     )
-    def watch(_ticks: Any, station: str, shown: Any, seen: Any, pending: Any, wanted: Any) -> Any:
+    def watch(_ticks: Any, wanted: Any, station: str, shown: Any, seen: Any, pending: Any) -> Any:
         if not shown or station != trust.KEY:
             return no_update
         curve, draws = desk.curve(shown["study"]), desk.draws(pending["study"] if pending else None)
