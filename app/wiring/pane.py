@@ -31,11 +31,12 @@ def wire(app: Dash, desk: Desk) -> None:
         Input({"type": "go-on", "station": ALL}, "n_clicks"),
         Input({"type": "back", "index": ALL}, "n_clicks"),
         Input({"type": "keys", "index": ALL}, "n_clicks"),
+        State("fault", "data"),
         prevent_initial_call=True,
     )
-    def go(_clicks: Any, _on: Any, _back: Any, _keys: Any) -> Any:
+    def go(_clicks: Any, _on: Any, _back: Any, _keys: Any, message: str) -> Any:
         if pressed("go") or pressed("go-on"):
-            return ctx.triggered_id["station"], None, ""
+            return ctx.triggered_id["station"], None, "" if message else no_update
         if pressed("back"):
             return no_update, None, no_update
         if pressed("keys"):
