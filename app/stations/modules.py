@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Mapping
 from typing import Any
 
 from dash import dcc, html
@@ -45,7 +44,7 @@ def state(view: View) -> str:
 def render(view: View) -> Pane:
     """Return the verdict, the tables of modules and genes, the method's settings and the trail."""
     if view.study is None:
-        return Pane(TITLE, [sentence("The modules are being worked out.", first=True), _settings(view)], [])
+        return Pane(TITLE, [sentence("The modules are being worked out.", first=True), *_settings(view)], [])
     study = view.study
     body: list[Any] = [
         *sentences(_brief(study)),
@@ -60,7 +59,7 @@ def render(view: View) -> Pane:
         ),
         # filled by a callback, so that only the table that is seen is made; its room is kept, so that nothing jumps
         html.Div(id="table-area", style={"minHeight": f"{height(len(study.modules))}px"}),
-        _settings(view),
+        *_settings(view),
         *_trail(view),
     ]
     hand_over = button("Hand over genes", {"type": "go-on", "station": "handover"}, kind="button primary")
@@ -78,13 +77,8 @@ def _brief(study: Study) -> list[str]:
     return list(study.sentences)
 
 
-def _settings(view: View) -> html.Div:
+def _settings(view: View) -> list[Any]:
     wanted = view.wanted
-    return html.Div(settings_of_method(wanted), id="settings", **{"data-method": wanted["method"]})
-
-
-def settings_of_method(wanted: Mapping[str, Any]) -> list[Any]:
-    """Return the controls that belong to the method asked for."""
     options = [{"label": label, "value": key} for key, label in METHOD_LABELS.items()]
     controls = [
         field(

@@ -10,7 +10,6 @@ from analysis.errors import CorymbError
 from analysis.evidence import HARVEST
 from analysis.study import StudySettings
 from app.desk import Desk
-from app.stations.modules import settings_of_method
 from app.wiring.triggers import pressed
 from app.workspace import TrailEntry
 
@@ -25,10 +24,9 @@ def wire(app: Dash, desk: Desk) -> None:
         Output("fault", "data", allow_duplicate=True),
         Input("wanted", "data"),
         State("at-hand", "data"),
-        State("fault", "data"),
         prevent_initial_call="initial_duplicate",
     )
-    def begin(wanted: Any, fingerprint: str | None, fault: str) -> Any:
+    def begin(wanted: Any, fingerprint: str | None) -> Any:
         fingerprint = (wanted or {}).get("network") or fingerprint
         if not fingerprint or not wanted:
             return no_update, no_update
@@ -40,8 +38,7 @@ def wire(app: Dash, desk: Desk) -> None:
             return no_update, str(error)
         desk.keep_wanted(fingerprint, wanted)
         asked = {key: wanted[key] for key in ("method", "quality", "resolution")}
-        settled = "" if fault else no_update  # a fault that is taken back draws the pane anew
-        return {"study": study_id, "job": job, "network": fingerprint, **asked}, settled
+        return {"study": study_id, "job": job, "network": fingerprint, **asked}, ""
 
     @app.callback(
         Output("wanted", "data", allow_duplicate=True),
@@ -60,19 +57,6 @@ def wire(app: Dash, desk: Desk) -> None:
         if changed["method"] == "louvain" and changed["quality"] != "modularity":
             changed |= {"quality": "modularity", "resolution": 1.0}
         return no_update if changed == wanted else changed
-
-    @app.callback(
-        Output("settings", "children"),
-        Output("settings", "data-method"),
-        Input("wanted", "data"),
-        State("settings", "data-method"),
-        prevent_initial_call=True,
-    )
-    def offer_settings(wanted: Any, offered: str | None) -> Any:
-        """Offer the settings of another method at once, before its clustering is there."""
-        if not wanted or offered is None or wanted["method"] == offered:
-            return no_update, no_update
-        return settings_of_method(wanted), wanted["method"]
 
     @app.callback(
         Output("wanted", "data", allow_duplicate=True),

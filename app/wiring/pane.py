@@ -31,12 +31,11 @@ def wire(app: Dash, desk: Desk) -> None:
         Input({"type": "go-on", "station": ALL}, "n_clicks"),
         Input({"type": "back", "index": ALL}, "n_clicks"),
         Input({"type": "keys", "index": ALL}, "n_clicks"),
-        State("fault", "data"),
         prevent_initial_call=True,
     )
-    def go(_clicks: Any, _on: Any, _back: Any, _keys: Any, message: str) -> Any:
+    def go(_clicks: Any, _on: Any, _back: Any, _keys: Any) -> Any:
         if pressed("go") or pressed("go-on"):
-            return ctx.triggered_id["station"], None, "" if message else no_update
+            return ctx.triggered_id["station"], None, ""
         if pressed("back"):
             return no_update, None, no_update
         if pressed("keys"):
