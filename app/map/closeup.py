@@ -18,7 +18,7 @@ SPREAD = 30.0
 SMALLEST_REACH = 290.0
 """So wide is even the close-up of a few genes: names are written at their natural size."""
 RING = 52.0
-NAMED = 24
+NAMED = 16
 """So many of the best connected genes keep a name that can be read, where there are more than can be named."""
 THIN_FROM = 200
 """Where there are more edges than this they are drawn thinner, so that the whole stays as light."""
@@ -45,7 +45,7 @@ STYLESHEET: list[dict[str, Any]] = [
             "min-zoomed-font-size": 9,
         },
     },
-    {"selector": "node.named", "style": {"font-size": 15}},
+    {"selector": "node.named", "style": {"font-size": 19}},
     {"selector": "node.outside", "style": {"background-blacken": -0.5, "color": "#5a6a70"}},
     {"selector": "node.centre", "style": {"border-width": 3, "border-color": "#1d2a2f", "font-weight": "bold"}},
     {"selector": "edge", "style": {"width": "data(width)", "line-color": "#9aa5a3", "opacity": 0.55}},
