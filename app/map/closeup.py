@@ -19,7 +19,8 @@ SMALLEST_REACH = 290.0
 """So wide is even the close-up of a few genes: names are written at their natural size."""
 RING = 52.0
 NAMED = 16
-"""So many of the best connected genes keep a name that can be read, where there are more than can be named."""
+ALL_NAMED = 80
+"""In a module with more genes around it only so many of the best connected keep a name that can be read."""
 THIN_FROM = 200
 """Where there are more edges than this they are drawn thinner, so that the whole stays as light."""
 
@@ -105,7 +106,8 @@ def _elements(
     else:
         place = _around(positions[chosen], labels[chosen], int(np.flatnonzero(chosen == centre)[0]))
     nodes = []
-    named = _best_connected(network, inside) if len(chosen) > 2 * NAMED else set()
+    # around a single gene there is room for the names of its partners
+    named = _best_connected(network, inside) if centre is None and len(chosen) > ALL_NAMED else set()
     for node, (x, y) in zip(chosen.tolist(), place.tolist(), strict=True):
         label = int(labels[node])
         colour = PALETTE[int(hues[label])] if label >= 0 and modules.sizes[label] >= 3 else GREY
